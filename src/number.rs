@@ -1,0 +1,8 @@
+//! Exact numbers, storage formats, and the sets of numbers that proofs are made of.
+
+pub mod ball;
+pub mod format;
+pub mod literal;
+pub mod radius;
+pub mod rectangle;
+pub mod wide_interval;
