@@ -1,0 +1,4 @@
+//! The certificate: its data model and its canonical bytes.
+
+pub mod canonical;
+pub mod model;
