@@ -5,7 +5,7 @@
 //! digits would underflow otherwise). After that, 53 bits are plenty.
 
 use inari::Interval;
-use rug::Float;
+use rug::{Complete, Float};
 use rug::float::Round;
 
 use crate::number::ball::Ball;
@@ -191,4 +191,62 @@ fn add_down(a: f64, b: f64) -> f64 {
 fn multiply_up(a: f64, b: f64) -> f64 {
     let product = a * b;
     if product.is_nan() { f64::INFINITY } else { product.next_up() }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use proptest::prelude::*;
+    use rug::Rational;
+
+    fn rational(x: f64) -> Rational {
+        Rational::from_f64(x).unwrap()
+    }
+
+    proptest! {
+        /// Against the exact maximum over tau in [0, r] of s tau + c tau^2/2.
+        #[test]
+        fn rise_is_above_the_exact_maximum_and_close(
+            s in prop_oneof![Just(0.0), 1e-12f64..1e3],
+            c in -1e3f64..1e3,
+            r in 1e-9f64..2.0,
+        ) {
+            let (es, ec, er) = (rational(s), rational(c), rational(r));
+            let at = |tau: &Rational| (&es * tau).complete() + (&ec * tau).complete() * tau / 2u32;
+            let mut exact = at(&er).max(Rational::new());
+            if c < 0.0 {
+                let vertex = (&es / &ec).complete() * -1;
+                if vertex <= er {
+                    exact = exact.max(at(&vertex));
+                }
+            }
+            let bound = rational(rise(s, c, r));
+            prop_assert!(bound >= exact);
+            let slack = rational(1e-12) * (s * r + c.abs() * r * r + 1e-300);
+            prop_assert!(bound <= exact + slack);
+        }
+
+        #[test]
+        fn second_order_form_contains_the_polynomial(
+            coefficients in proptest::collection::vec(-10.0f64..10.0, 1..9),
+            m in -1.0f64..1.0,
+            r in 0.0f64..0.5,
+            share in -1.0f64..1.0,
+        ) {
+            let polynomial = DoublePolynomial::new(coefficients.iter().map(|&c| singleton(c)).collect());
+            let over = interval(m - r, m + r);
+            let offset = over - singleton(m);
+            let form = polynomial.second_order(m, over);
+            let t = m + r * share;
+            prop_assume!(over.contains(t));
+            let exact = coefficients
+                .iter()
+                .rev()
+                .fold(Rational::new(), |sum, &c| sum * rational(t) + rational(c));
+            let (lower, upper) = form.bounds(offset.mag());
+            prop_assert!(rational(lower) <= exact && exact <= rational(upper));
+            let range = form.over(offset);
+            prop_assert!(rational(range.inf()) <= exact && exact <= rational(range.sup()));
+        }
+    }
 }

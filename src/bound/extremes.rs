@@ -305,3 +305,6 @@ fn initial_mesh(start: f64, end: f64, parts: usize) -> Vec<(f64, f64)> {
     }
     mesh
 }
+
+#[cfg(test)]
+mod tests;

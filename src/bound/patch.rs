@@ -111,6 +111,16 @@ pub enum Part {
     Approximant,
 }
 
+impl Part {
+    /// The word in messages.
+    pub fn name(self) -> &'static str {
+        match self {
+            Part::Reference => "reference",
+            Part::Approximant => "approximant",
+        }
+    }
+}
+
 /// Most bits a series is computed with.
 pub const MOST_PRECISION: u32 = 8192;
 

@@ -64,9 +64,9 @@ pub struct Subject {
     pub title: String,
     /// The approximants.
     pub approximants: Vec<Approximant>,
-    /// The declared program, as the audit file gives it.
-    #[serde(default, skip_serializing_if = "BTreeMap::is_empty")]
-    pub program: BTreeMap<String, String>,
+    /// The declared program, as JSON text with its keys sorted.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub program: Option<String>,
 }
 
 /// A reference function.
@@ -87,6 +87,10 @@ pub struct Approximant {
     pub reference: Reference,
     /// Name of the basis.
     pub basis: String,
+    /// What the basis needs beside the coefficients, by the keys of the audit file: order,
+    /// parity, first, scaling.
+    #[serde(default, skip_serializing_if = "BTreeMap::is_empty")]
+    pub conventions: BTreeMap<String, String>,
     /// Format in which the coefficients are stored, or "exact".
     pub stored_as: String,
     /// Which piece owns a boundary: "left" or "right".
@@ -102,10 +106,20 @@ pub struct Approximant {
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
 pub struct Steps {
-    /// Scalars have one value, arrays any number.
-    pub constants: BTreeMap<String, Vec<String>>,
+    /// The named constants.
+    pub constants: BTreeMap<String, StepConstant>,
     /// The steps as given.
     pub steps: Vec<String>,
+}
+
+/// A constant of straight-line code.
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+#[serde(untagged)]
+pub enum StepConstant {
+    /// One number.
+    Number(String),
+    /// A list of numbers.
+    Array(Vec<String>),
 }
 
 /// One piece as stored.
@@ -114,27 +128,21 @@ pub struct Steps {
 pub struct StoredPiece {
     /// Its ends: exact numbers or constant formulas.
     pub on: [String; 2],
-    /// The exact polynomial that the stored coefficients define, in the given basis.
+    /// The local variable is u = (x - origin)/scale; absent for steps.
     #[serde(default, skip_serializing_if = "Option::is_none")]
-    pub polynomial: Option<StoredPolynomial>,
-}
-
-/// Coefficients with their meaning: u = (x - origin)/scale, and the value is
-/// sum c_k u^k (power), sum c_k T_k(u) (chebyshev), sum c_k B_{k,n}(u) (bernstein), or the two-point
-/// Hermite interpolant of the Taylor data at u = 0 (`coefficients`, in powers of u) and at u = 1
-/// (`right_coefficients`, in powers of u - 1).
-#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
-#[serde(deny_unknown_fields)]
-pub struct StoredPolynomial {
-    /// Exact number or constant formula.
-    pub origin: String,
-    /// Exact number or constant formula.
-    pub scale: String,
-    /// In ascending order, zeros of a parity filled in, a halved first coefficient halved.
-    pub coefficients: Vec<String>,
-    /// Hermite only.
+    pub origin: Option<String>,
+    /// See `origin`.
     #[serde(default, skip_serializing_if = "Option::is_none")]
-    pub right_coefficients: Option<Vec<String>>,
+    pub scale: Option<String>,
+    /// Stored numbers of a power, Chebyshev or Bernstein piece, in the order of the file.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub coefficients: Option<Vec<String>>,
+    /// Taylor data f^(j)/j! at the left end of a Hermite piece.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub left_taylor: Option<Vec<String>>,
+    /// Taylor data at its right end.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub right_taylor: Option<Vec<String>>,
 }
 
 /// The outcome of a claim.
