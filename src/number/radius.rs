@@ -30,15 +30,28 @@ pub struct Radius {
     mantissa: u32,
 }
 
+#[allow(
+    clippy::should_implement_trait,
+    reason = "an operator would hide that the operation rounds up"
+)]
 impl Radius {
     /// The number 0.
-    pub const ZERO: Self = Self { exponent: i64::MIN, mantissa: 0 };
+    pub const ZERO: Self = Self {
+        exponent: i64::MIN,
+        mantissa: 0,
+    };
 
     /// No bound at all.
-    pub const INFINITY: Self = Self { exponent: i64::MAX, mantissa: MANTISSA_MIN };
+    pub const INFINITY: Self = Self {
+        exponent: i64::MAX,
+        mantissa: MANTISSA_MIN,
+    };
 
     /// The number 1.
-    pub const ONE: Self = Self { exponent: 1 - RADIUS_BITS as i64, mantissa: MANTISSA_MIN };
+    pub const ONE: Self = Self {
+        exponent: 1 - RADIUS_BITS as i64,
+        mantissa: MANTISSA_MIN,
+    };
 
     /// True for the number 0.
     #[inline]
@@ -55,7 +68,10 @@ impl Radius {
     /// 2^exponent, exact for |exponent| < 2^59 and rounded up beyond.
     #[inline]
     pub const fn power_of_two(exponent: i64) -> Self {
-        Self::capped(MANTISSA_MIN, exponent.saturating_sub(RADIUS_BITS as i64 - 1))
+        Self::capped(
+            MANTISSA_MIN,
+            exponent.saturating_sub(RADIUS_BITS as i64 - 1),
+        )
     }
 
     /// The least radius >= |value|; infinity for an infinite value or a NaN.
@@ -77,6 +93,14 @@ impl Radius {
     #[inline]
     pub const fn from_u64_upper(value: u64) -> Self {
         Self::from_u64_scaled(value, 0)
+    }
+
+    /// The largest radius <= value, a bound from below.
+    #[inline]
+    pub const fn from_u64_lower(value: u64) -> Self {
+        let bits = 64 - value.leading_zeros();
+        let cut = bits.saturating_sub(RADIUS_BITS);
+        Self::from_u64_scaled(value >> cut, cut as i64)
     }
 
     /// The least radius >= |value|; infinity for an infinite value or a NaN.
@@ -115,7 +139,11 @@ impl Radius {
     #[inline]
     #[must_use]
     pub fn add(self, other: Self) -> Self {
-        let (large, small) = if self >= other { (self, other) } else { (other, self) };
+        let (large, small) = if self >= other {
+            (self, other)
+        } else {
+            (other, self)
+        };
         if small.is_zero() || large.is_infinite() {
             return large;
         }
@@ -158,11 +186,18 @@ impl Radius {
         }
         let exponent = self.exponent - i64::from(RADIUS_BITS);
         let shift = difference.ilog2() as i64 - (i64::from(RADIUS_BITS) - 1);
-        let mantissa = if shift >= 0 { difference >> shift } else { difference << -shift };
+        let mantissa = if shift >= 0 {
+            difference >> shift
+        } else {
+            difference << -shift
+        };
         if exponent + shift < EXPONENT_MIN {
             return Self::ZERO;
         }
-        Self { exponent: exponent + shift, mantissa: mantissa as u32 }
+        Self {
+            exponent: exponent + shift,
+            mantissa: mantissa as u32,
+        }
     }
 
     /// self * other, rounded up; zero times infinity is zero (the factor that is zero is exact).
@@ -179,7 +214,10 @@ impl Radius {
         let product = u64::from(self.mantissa) * u64::from(other.mantissa);
         let shift = RADIUS_BITS - 1 + (product >> (2 * RADIUS_BITS - 1)) as u32;
         let mantissa = (product + ((1u64 << shift) - 1)) >> shift;
-        Self::carried(mantissa as u32, self.exponent + other.exponent + i64::from(shift))
+        Self::carried(
+            mantissa as u32,
+            self.exponent + other.exponent + i64::from(shift),
+        )
     }
 
     /// The quotient of the two numbers, rounded up. It bounds |a| / |b| if self >= |a| and
@@ -240,10 +278,18 @@ impl Radius {
         }
         // m 2^e = (m 2^s) 2^(e - s) with e - s even and m 2^s in [2^58, 2^60), whose root has 30
         // bits.
-        let shift = if self.exponent.rem_euclid(2) == 0 { RADIUS_BITS } else { RADIUS_BITS - 1 };
+        let shift = if self.exponent.rem_euclid(2) == 0 {
+            RADIUS_BITS
+        } else {
+            RADIUS_BITS - 1
+        };
         let square = u64::from(self.mantissa) << shift;
         let floor = square.isqrt();
-        let root = if floor * floor == square { floor } else { floor + 1 };
+        let root = if floor * floor == square {
+            floor
+        } else {
+            floor + 1
+        };
         Self::carried(root as u32, (self.exponent - i64::from(shift)) / 2)
     }
 
@@ -271,7 +317,9 @@ impl Radius {
         }
         let mantissa = Float::with_val(RADIUS_BITS, self.mantissa);
         // A shift by the least or the largest i32 leaves MPFR's exponent range.
-        let power = self.exponent.clamp(i64::from(i32::MIN), i64::from(i32::MAX)) as i32;
+        let power = self
+            .exponent
+            .clamp(i64::from(i32::MIN), i64::from(i32::MAX)) as i32;
         Float::with_val_round(precision, &mantissa << power, Round::Up).0
     }
 
@@ -307,7 +355,10 @@ impl Radius {
         } else {
             let shift = bits - RADIUS_BITS;
             let cut = value & ((1 << shift) - 1) != 0;
-            Self::carried((value >> shift) as u32 + cut as u32, exponent + shift as i64)
+            Self::carried(
+                (value >> shift) as u32 + cut as u32,
+                exponent + shift as i64,
+            )
         }
     }
 
@@ -331,7 +382,10 @@ impl Radius {
         if exponent > EXPONENT_MAX {
             Self::INFINITY
         } else if exponent < EXPONENT_MIN {
-            Self { exponent: EXPONENT_MIN, mantissa: MANTISSA_MIN }
+            Self {
+                exponent: EXPONENT_MIN,
+                mantissa: MANTISSA_MIN,
+            }
         } else {
             Self { exponent, mantissa }
         }

@@ -43,7 +43,10 @@ fn assert_tight_above(value: Radius, truth: &Rational) {
     assert!(is_normal(value), "{value:?}");
     let above = exact(value);
     assert!(&above >= truth, "{value:?} is below {truth}");
-    assert!(above <= Rational::from(truth * one_rounding()), "{value:?} is far above {truth}");
+    assert!(
+        above <= truth * one_rounding(),
+        "{value:?} is far above {truth}"
+    );
 }
 
 proptest! {
@@ -87,7 +90,7 @@ proptest! {
         let root = exact(a.sqrt());
         let square = Rational::from(&root * &root);
         prop_assert!(square >= x);
-        prop_assert!(square <= Rational::from(&x * one_rounding().square()));
+        prop_assert!(square <= &x * one_rounding().square());
         let truth = x.clone().pow(power as i32);
         let bound = exact(a.pow(power));
         prop_assert!(bound >= truth);
@@ -121,7 +124,12 @@ proptest! {
             let back = Radius::from_f64_upper(value).to_f64_upper();
             prop_assert!(back >= value.abs());
         }
-        assert_tight_above(Radius::from_u64_upper(integer), &Rational::from(integer));
+        let integers = [integer, integer >> 32, integer >> 60];
+        for truth in integers {
+            assert_tight_above(Radius::from_u64_upper(truth), &Rational::from(truth));
+            let below = exact(Radius::from_u64_lower(truth));
+            prop_assert!(below <= truth && below * one_rounding() >= truth);
+        }
     }
 }
 
@@ -131,12 +139,21 @@ fn what_is_representable_stays_exact() {
     assert_eq!(Radius::power_of_two(0), Radius::ONE);
     assert_eq!(exact(Radius::from_f64_upper(-0.75)), Rational::from((3, 4)));
     assert_eq!(Radius::from_f64_upper(0.0), Radius::ZERO);
-    assert_eq!(Radius::from_f64_upper(f64::from_bits(1)), Radius::power_of_two(-1074));
+    assert_eq!(
+        Radius::from_f64_upper(f64::from_bits(1)),
+        Radius::power_of_two(-1074)
+    );
     assert_eq!(Radius::from_u64_upper(9).sqrt(), Radius::from_u64_upper(3));
     assert_eq!(Radius::from_u64_upper(3).pow(4), Radius::from_u64_upper(81));
     assert_eq!(Radius::ONE.add(Radius::ONE), Radius::from_u64_upper(2));
-    assert_eq!(Radius::of_float_upper(&Float::with_val(99, -5)), Radius::from_u64_upper(5));
-    assert_eq!(Radius::of_rational_upper(&Rational::from((-3, 8))), Radius::from_f64_upper(0.375));
+    assert_eq!(
+        Radius::of_float_upper(&Float::with_val(99, -5)),
+        Radius::from_u64_upper(5)
+    );
+    assert_eq!(
+        Radius::of_rational_upper(&Rational::from((-3, 8))),
+        Radius::from_f64_upper(0.375)
+    );
 }
 
 #[test]
