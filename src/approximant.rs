@@ -1,5 +1,11 @@
 //! The shipped approximation: its basis, its pieces, and the exact function that the stored
 //! coefficients define.
 
+pub mod bernstein;
+pub mod chebyshev;
+pub mod common_denominator;
+pub mod hermite;
 pub mod piece;
 pub mod polynomial;
+#[cfg(test)]
+mod test_numbers;
