@@ -4,5 +4,6 @@
 //! `number -> function -> approximant -> bound -> claim -> audit -> certificate -> output -> cli`.
 
 pub mod approximant;
+pub mod audit;
 pub mod function;
 pub mod number;

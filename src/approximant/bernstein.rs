@@ -2,9 +2,7 @@
 
 use rug::{Integer, Rational};
 
-use crate::approximant::common_denominator::{
-    ConversionTooLarge, over_common_denominator, reduce,
-};
+use crate::approximant::common_denominator::{ConversionTooLarge, over_common_denominator, reduce};
 
 /// The coefficients a_k with sum_k a_k s^k = sum_i b_i C(n,i) s^i (1-s)^(n-i) exactly, where
 /// n + 1 is the number of coefficients and index 0 comes first.

@@ -2,9 +2,7 @@
 
 use rug::{Integer, Rational};
 
-use crate::approximant::common_denominator::{
-    ConversionTooLarge, over_common_denominator, reduce,
-};
+use crate::approximant::common_denominator::{ConversionTooLarge, over_common_denominator, reduce};
 
 /// How the first coefficient counts.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -100,8 +98,12 @@ mod tests {
         for (degree, powers) in known.iter().enumerate() {
             let mut coefficients = vec![Rational::new(); degree + 1];
             coefficients[degree] = Rational::from(1);
-            let expected: Vec<Rational> = powers.iter().map(|&power| Rational::from(power)).collect();
-            assert_eq!(to_powers(&coefficients, FirstCoefficient::Full).unwrap(), expected);
+            let expected: Vec<Rational> =
+                powers.iter().map(|&power| Rational::from(power)).collect();
+            assert_eq!(
+                to_powers(&coefficients, FirstCoefficient::Full).unwrap(),
+                expected
+            );
         }
     }
 

@@ -40,8 +40,11 @@ pub fn check_work(coefficients: usize, bits: u64) -> Result<(), ConversionTooLar
 pub fn over_common_denominator(
     values: &[Rational],
 ) -> Result<(Vec<Integer>, Integer), ConversionTooLarge> {
-    let numerator_bits =
-        values.iter().map(|value| u64::from(value.numer().significant_bits())).max().unwrap_or(0);
+    let numerator_bits = values
+        .iter()
+        .map(|value| u64::from(value.numer().significant_bits()))
+        .max()
+        .unwrap_or(0);
     let mut denominator = Integer::from(1);
     for value in values {
         denominator.lcm_mut(value.denom());

@@ -25,8 +25,7 @@ pub fn multiply_by_powers_of_width(
     width: &Rational,
 ) -> Result<Vec<Rational>, ConversionTooLarge> {
     let order = taylor.len().saturating_sub(1) as u64;
-    let width_bits =
-        u64::from(width.numer().significant_bits() + width.denom().significant_bits());
+    let width_bits = u64::from(width.numer().significant_bits() + width.denom().significant_bits());
     check_work(taylor.len(), width_bits.saturating_mul(order))?;
     let mut power = Rational::from(1);
     let mut scaled = Vec::with_capacity(taylor.len());
@@ -153,7 +152,13 @@ mod tests {
         let mirrored: Vec<Rational> = right
             .iter()
             .enumerate()
-            .map(|(j, q)| if j % 2 == 0 { q.clone() } else { Rational::from(-q) })
+            .map(|(j, q)| {
+                if j % 2 == 0 {
+                    q.clone()
+                } else {
+                    Rational::from(-q)
+                }
+            })
             .collect();
         let reflected = Rational::from(1 - s);
         one_end(left, right.len(), s) + one_end(&mirrored, left.len(), &reflected)
@@ -206,7 +211,9 @@ mod tests {
     #[test]
     fn a_grade_of_a_thousand_is_quick() {
         let data = |count: u32| -> Vec<Rational> {
-            (0..count).map(|j| Rational::from((2 * j + 1, 1_u64 << 52))).collect()
+            (0..count)
+                .map(|j| Rational::from((2 * j + 1, 1_u64 << 52)))
+                .collect()
         };
         let powers = to_powers(&data(369), &data(631)).unwrap();
         assert_eq!(powers.len(), 1000);

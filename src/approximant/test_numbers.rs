@@ -16,5 +16,8 @@ pub fn rational() -> impl Strategy<Value = Rational> {
 
 /// sum_k powers[k] t^k by Horner's rule.
 pub fn horner(powers: &[Rational], t: &Rational) -> Rational {
-    powers.iter().rev().fold(Rational::new(), |sum, power| sum * t + power)
+    powers
+        .iter()
+        .rev()
+        .fold(Rational::new(), |sum, power| sum * t + power)
 }
