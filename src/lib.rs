@@ -5,5 +5,6 @@
 
 pub mod approximant;
 pub mod audit;
+pub mod claim;
 pub mod function;
 pub mod number;

@@ -112,22 +112,22 @@ impl Entry {
 
 impl Document {
     /// Reads the bytes of a file. The text must be UTF-8 (a byte order mark is dropped).
-    pub fn parse(name: &str, bytes: Vec<u8>, syntax: Syntax) -> Result<Self, Diagnostic> {
+    pub fn parse(name: &str, bytes: Vec<u8>, syntax: Syntax) -> Result<Self, Box<Diagnostic>> {
         let mut text = match String::from_utf8(bytes) {
             Ok(text) => text,
-            Err(error) => return Err(not_utf8(name, &error)),
+            Err(error) => return Err(Box::new(not_utf8(name, &error))),
         };
         if text.starts_with('\u{feff}') {
             text.drain(..'\u{feff}'.len_utf8());
         }
         if u32::try_from(text.len()).is_err() {
-            return Err(Diagnostic::error(
+            return Err(Box::new(Diagnostic::error(
                 name,
                 None,
                 "the file is too large",
                 format!("{} bytes", text.len()),
                 "files of 4 GiB and more cannot be read: split the table",
-            ));
+            )));
         }
         let problem = |problem: Problem| {
             let place = Place::new(&text, problem.span);

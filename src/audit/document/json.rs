@@ -51,7 +51,7 @@ fn advice(kind: &ParseErrorKind) -> &'static str {
         | ParseErrorKind::UnaryPlusNumbersNotAllowed
         | ParseErrorKind::BareDecimalPointNumbersNotAllowed
         | ParseErrorKind::NonFiniteNumbersNotAllowed => "put the number in quotes",
-        _ => "",
+        _ => "see https://www.json.org for the syntax",
     }
 }
 

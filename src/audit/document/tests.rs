@@ -2,11 +2,11 @@ use proptest::prelude::*;
 
 use super::*;
 
-fn toml(text: &str) -> Result<Document, Diagnostic> {
+fn toml(text: &str) -> Result<Document, Box<Diagnostic>> {
     Document::parse("a.audit.toml", text.as_bytes().to_vec(), Syntax::Toml)
 }
 
-fn json(text: &str) -> Result<Document, Diagnostic> {
+fn json(text: &str) -> Result<Document, Box<Diagnostic>> {
     Document::parse("a.audit.json", text.as_bytes().to_vec(), Syntax::Json)
 }
 

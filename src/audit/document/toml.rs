@@ -14,7 +14,12 @@ pub(super) fn parse(text: &str) -> Result<Node, Problem> {
             let key = text.get(span.clone()).unwrap_or_default();
             return Problem::duplicate_key(key, span);
         }
-        Problem::new(span, "this is not TOML", error.message(), "")
+        // The parser turns numbers into 64-bit ones and objects to those that do not fit.
+        let advice = match error.message().contains("number") {
+            true => "put the number in quotes",
+            false => "see https://toml.io for the syntax",
+        };
+        Problem::new(span, "this is not TOML", error.message(), advice)
     })?;
     Ok(Node::new(from_table(text, document.as_table()), 0..0))
 }
