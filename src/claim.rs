@@ -1,0 +1,3 @@
+//! What is claimed about an approximation.
+
+pub mod model;
