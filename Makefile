@@ -72,12 +72,14 @@ campaign: build
 
 # cargo-fuzz asks for a nightly compiler; RUSTC_BOOTSTRAP lets the stable one do. Its own flags
 # reach the compiler through RUSTFLAGS, so the processor level has to stand there too.
+# The worked audits are seeds.
 fuzz: tools
 	@cargo fuzz --version >/dev/null 2>&1 || { echo 'Install it first: cargo install cargo-fuzz'; exit 1; }
 	@for target in literal formula audit_file; do \
 	  echo "fuzz target $$target"; \
+	  mkdir -p fuzz/corpus/$$target; \
 	  RUSTC_BOOTSTRAP=1 RUSTFLAGS='$(if $(filter x86_64,$(shell uname -m)),-Ctarget-cpu=x86-64-v3)' \
-	    cargo fuzz run $$target -- -max_total_time=$(FUZZ_SECONDS); \
+	    cargo fuzz run $$target fuzz/corpus/$$target certificates -- -max_total_time=$(FUZZ_SECONDS); \
 	done
 
 tools:

@@ -253,7 +253,7 @@ first = "full"
 order = "ascending"
 stored_as = "binary64"
 pieces = [
-  {{ on = ["0", "3/2"], coefficients = {{ file = "swing-gauge.json", array = "angle" }} }},
+  {{ on = ["0", "3/2"], coefficients = {{ file = "swing-gauge.json", key = "angle" }} }},
 ]
 
 [[claims]]
@@ -412,6 +412,7 @@ formula = "tanh(x)"
 
 [approximant]
 basis = "steps"
+stored_as = "binary32"
 on = ["-4", "4"]
 steps = ["z = x*x", "q = horner(P, z)/horner(Q, z)", "y = x*q"]
 
