@@ -9,7 +9,11 @@ use libfuzzer_sys::fuzz_target;
 
 fuzz_target!(|text: &str| {
     let json = text.trim_start().starts_with('{');
-    let name = if json { "fuzz.audit.json" } else { "fuzz.audit.toml" };
+    let name = if json {
+        "fuzz.audit.json"
+    } else {
+        "fuzz.audit.toml"
+    };
     match read_text(name, text, None, &ReadOptions::default()) {
         Ok(file) => {
             assert!(!file.approximants.is_empty() && !file.claims.is_empty());

@@ -32,7 +32,11 @@ fuzz_target!(|text: &str| match parse_formula(text) {
         assert_eq!(again.operations(), formula.operations());
     }
     Err(error) => {
-        assert!(text.get(error.span.clone()).is_some(), "{:?} in {text:?}", error.span);
+        assert!(
+            text.get(error.span.clone()).is_some(),
+            "{:?} in {text:?}",
+            error.span
+        );
         assert!(!error.message.is_empty());
     }
 });
