@@ -23,8 +23,8 @@ pub fn compare(left: &Constant, right: &Constant) -> Option<Ordering> {
         return Some(Ordering::Equal);
     }
     for precision in PRECISIONS {
-        let (left_lower, left_upper) = left.enclosure(precision);
-        let (right_lower, right_upper) = right.enclosure(precision);
+        let (left_lower, left_upper) = left.enclosure(precision)?;
+        let (right_lower, right_upper) = right.enclosure(precision)?;
         if left_upper < right_lower {
             return Some(Ordering::Less);
         }

@@ -1,5 +1,7 @@
 //! The exact polynomial that every polynomial basis becomes.
 
+mod as_formula;
+
 use rug::Rational;
 
 use crate::function::constant::Constant;

@@ -29,11 +29,31 @@ pub enum Order {
     Descending,
 }
 
+impl Order {
+    /// The word of the audit file.
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::Ascending => "ascending",
+            Self::Descending => "descending",
+        }
+    }
+}
+
 /// Which powers are listed, where only every second one is.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Parity {
     Odd,
     Even,
+}
+
+impl Parity {
+    /// The word of the audit file.
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::Odd => "odd",
+            Self::Even => "even",
+        }
+    }
 }
 
 /// The origin and the scale of a local variable on a piece: it is (x - origin)/scale.

@@ -83,6 +83,15 @@ pub struct AuditFile {
     pub notes: Vec<Diagnostic>,
 }
 
+impl AuditFile {
+    /// The reference of an approximant, by its position.
+    pub fn reference_of(&self, approximant: usize) -> &Formula {
+        match &self.approximants[approximant].reference {
+            Reference::Formula(formula) => formula,
+        }
+    }
+}
+
 /// Reads an audit file: JSON where the name ends in `.json`, TOML otherwise.
 pub fn read(path: &Path, options: &ReadOptions) -> Result<AuditFile, Vec<Diagnostic>> {
     let name = path.display().to_string();

@@ -7,11 +7,10 @@ use rayon::prelude::*;
 
 use crate::approximant::piece::{Approximant, Owner};
 use crate::audit::file::AuditFile;
-use crate::bound::measure::Measure;
 use crate::bound::search::Undefined;
 use crate::claim::domain::{End, Part, intersection};
 use crate::claim::evaluation::{Effort, PieceOutcome, Summary, evaluate, summary};
-use crate::claim::model::{Claim, ErrorMeasure, Target};
+use crate::claim::model::{Claim, Target};
 use crate::function::constant::Constant;
 
 /// Default tightness of an enclosure: upper/lower - 1.
@@ -120,14 +119,7 @@ pub fn run(
 }
 
 fn carry_out(file: &AuditFile, unit: &Unit, effort: &Effort) -> Result<PieceOutcome, AuditError> {
-    let measure = match &unit.claim.measure {
-        ErrorMeasure::Absolute => Measure::Absolute,
-        ErrorMeasure::Relative => Measure::Relative,
-        ErrorMeasure::Mixed { absolute_part, relative_part } => Measure::Mixed {
-            absolute: absolute_part.clone(),
-            relative: relative_part.clone(),
-        },
-    };
+    let measure = unit.claim.measure.bound_measure();
     evaluate(
         file.reference_of(unit.approximant_index),
         &unit.approximant.pieces[unit.piece],
@@ -196,7 +188,7 @@ fn plan<'a>(
             Owner::Right => [true, index + 1 == count],
             Owner::Left => [index == 0, true],
         };
-        let parts: Vec<Part> = intervals
+        let parts: Vec<Part> = on
             .iter()
             .filter_map(|(_, [left, right])| {
                 intersection([&ends[0], &ends[1]], owned, [left, right])

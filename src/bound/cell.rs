@@ -94,7 +94,7 @@ impl Cell {
     pub fn argument(&self, centre: &Centre, t: f64) -> Centre {
         let radius = self.radius_around(centre).to_rational().unwrap_or_default();
         let step = Rational::from_f64(t).unwrap_or_default() * radius;
-        Centre { rational: (&centre.rational + step).complete(), pi_multiple: centre.pi_multiple.clone() }
+        Centre { rational: Rational::from(&centre.rational + step), pi_multiple: centre.pi_multiple.clone() }
     }
 
     /// Two halves; an anchored cell becomes an anchored middle and what is beside it.

@@ -5,7 +5,7 @@
 //! digits would underflow otherwise). After that, 53 bits are plenty.
 
 use inari::Interval;
-use rug::{Complete, Float};
+use rug::Float;
 use rug::float::Round;
 
 use crate::number::ball::Ball;
@@ -197,7 +197,7 @@ fn multiply_up(a: f64, b: f64) -> f64 {
 mod tests {
     use super::*;
     use proptest::prelude::*;
-    use rug::Rational;
+    use rug::{Complete, Rational};
 
     fn rational(x: f64) -> Rational {
         Rational::from_f64(x).unwrap()

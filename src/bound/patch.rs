@@ -4,7 +4,7 @@ use rug::{Complete, Float, Rational};
 use rug::float::Round;
 
 use crate::approximant::piece::Form;
-use crate::bound::double_polynomial::{DoublePolynomial, outward, singleton};
+use crate::bound::double_polynomial::{DoublePolynomial, outward};
 use crate::bound::extremes::{Divisor, Region, Target, extremes, Extremes, NoExtremes};
 use crate::bound::measure::Measure;
 use crate::bound::point::Subject;

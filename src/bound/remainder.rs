@@ -18,6 +18,7 @@
 
 use rug::Float;
 use rug::float::Round;
+use rug::ops::DivAssignRound;
 
 use crate::bound::steering;
 use crate::function::disc::magnitude_on_disc;

@@ -47,10 +47,7 @@ pub fn leading_zeros(formula: &Formula, centre: &Centre) -> usize {
 pub fn leading_zeros_of_form(form: &Form, centre: &Centre) -> usize {
     match form {
         Form::Formula(formula) => leading_zeros(formula, centre),
-        Form::Polynomial(polynomial) => match polynomial.to_formula() {
-            Some(formula) => leading_zeros(&formula, centre),
-            None => 0,
-        },
+        Form::Polynomial(polynomial) => leading_zeros(&polynomial.to_formula(), centre),
     }
 }
 
@@ -105,7 +102,7 @@ pub fn bracket(function: &Formula, left: &Rational, right: &Rational) -> Option<
     let sign = |x: &Rational| sign_at(function, x);
     const PARTS: u32 = 16;
     let width = (right - left).complete();
-    let node = |k: u32| (left + (&width * Rational::from((k, PARTS))).complete()).complete();
+    let node = |k: u32| Rational::from(left + Rational::from(&width * Rational::from((k, PARTS))));
     let mut ends: Option<(Rational, Rational)> = None;
     let mut previous: Option<(Rational, i32)> = None;
     for k in 0..=PARTS {

@@ -4,10 +4,9 @@ use std::collections::BTreeMap;
 
 use rug::{Float, Rational};
 
-use crate::approximant::piece::{Approximant, Basis, Form, Owner, Piece, StepConstant, Stored};
+use crate::approximant::piece::{Approximant, Basis, Form, Owner, Piece, Stored};
 use crate::audit::file::AuditFile;
 use crate::audit::run::ClaimOutcome;
-use crate::bound::measure::Measure;
 use crate::bound::point::{PointValues, Subject, precise_values_at};
 use crate::bound::search::Unfinished;
 use crate::certificate::model;
@@ -16,6 +15,7 @@ use crate::claim::judgement::Verdict;
 use crate::claim::model::ErrorMeasure;
 use crate::function::constant::Constant;
 use crate::function::exact::Centre;
+use crate::function::parser::ConstantValue;
 use crate::number::ball::Ball;
 use crate::number::decimal::{ENCLOSURE_DIGITS, exact, rounded_down, rounded_up};
 use crate::number::radius::Radius;
@@ -98,20 +98,20 @@ fn approximant(approximant: &Approximant, reference: &str) -> model::Approximant
         Basis::Hermite { scaling } => {
             conventions.insert("scaling".to_owned(), scaling.name().to_owned());
         }
-        Basis::Steps { constants, steps: lines } => {
+        Basis::Steps { constants, .. } => {
             let texts = |numbers: &[Rational]| numbers.iter().map(exact).collect::<Vec<_>>();
             steps = Some(model::Steps {
                 constants: constants
                     .iter()
                     .map(|(name, constant)| {
                         let values = match constant {
-                            StepConstant::Number(number) => model::StepConstant::Number(exact(number)),
-                            StepConstant::Array(numbers) => model::StepConstant::Array(texts(numbers)),
+                            ConstantValue::Number(number) => model::StepConstant::Number(exact(number)),
+                            ConstantValue::Array(numbers) => model::StepConstant::Array(texts(numbers)),
                         };
                         (name.clone(), values)
                     })
                     .collect(),
-                steps: lines.clone(),
+                steps: lines_of(approximant),
             });
         }
     }
@@ -124,6 +124,15 @@ fn approximant(approximant: &Approximant, reference: &str) -> model::Approximant
         owner: owner(approximant.owner).to_owned(),
         steps,
         pieces: approximant.pieces.iter().map(stored_piece).collect(),
+    }
+}
+
+/// The steps as given: the text of their formula, one to a line.
+fn lines_of(approximant: &Approximant) -> Vec<String> {
+    let form = approximant.pieces.first().map(|piece| &piece.form);
+    match form {
+        Some(Form::Formula(formula)) => formula.text().lines().map(str::to_owned).collect(),
+        _ => Vec::new(),
     }
 }
 
@@ -288,7 +297,7 @@ fn reason(outcome: &ClaimOutcome) -> String {
 
 fn witness(file: &AuditFile, outcome: &ClaimOutcome, piece: usize, at: &Place) -> Option<model::Witness> {
     let claim = &file.claims[outcome.claim];
-    let measure = Measure::from(&claim.measure);
+    let measure = claim.measure.bound_measure();
     let subject = Subject {
         reference: file.reference_of(outcome.approximant),
         form: &file.approximants[outcome.approximant].approximant.pieces[piece].form,

@@ -2,6 +2,7 @@
 
 use rug::Rational;
 
+use crate::bound::measure::Measure;
 use crate::function::constant::Constant;
 
 /// Which function is compared with the reference f.
@@ -66,6 +67,18 @@ pub struct Claim {
 }
 
 impl ErrorMeasure {
+    /// The measure as the bounds know it.
+    pub fn bound_measure(&self) -> Measure {
+        match self {
+            Self::Absolute => Measure::Absolute,
+            Self::Relative => Measure::Relative,
+            Self::Mixed { absolute_part, relative_part } => Measure::Mixed {
+                absolute: absolute_part.clone(),
+                relative: relative_part.clone(),
+            },
+        }
+    }
+
     /// The word of the audit file.
     pub fn name(&self) -> &'static str {
         match self {

@@ -6,6 +6,8 @@ use super::formula::{Formula, FormulaBuilder, Operation};
 use super::parser::{SyntaxError, parse_formula};
 use crate::number::literal;
 
+mod value;
+
 #[cfg(test)]
 mod tests;
 

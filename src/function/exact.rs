@@ -12,6 +12,8 @@ use std::f64::consts::PI;
 
 use rug::{Integer, Rational};
 
+use crate::number::ball::Ball;
+use crate::number::wide_interval::WideInterval;
 use crate::function::exact::taylor::{Known, Taylor};
 use crate::function::formula::{Formula, Function, NodeId, Operation};
 
@@ -33,6 +35,26 @@ impl Centre {
             rational,
             pi_multiple: Rational::new(),
         }
+    }
+
+    /// Encloses the point.
+    pub fn ball(&self, precision: u32) -> Ball {
+        let rational = Ball::from_rational(&self.rational, precision);
+        if self.pi_multiple.is_zero() {
+            return rational;
+        }
+        let multiple = Ball::from_rational(&self.pi_multiple, precision);
+        rational.add(&multiple.mul(&Ball::pi(precision)))
+    }
+
+    /// Encloses the point.
+    pub fn wide_interval(&self, precision: u32) -> WideInterval {
+        let rational = WideInterval::from_rational(&self.rational, precision);
+        if self.pi_multiple.is_zero() {
+            return rational;
+        }
+        let multiple = WideInterval::from_rational(&self.pi_multiple, precision);
+        rational.add(&multiple.mul(&WideInterval::pi(precision)))
     }
 
     /// A double near the point, to steer a search with.
