@@ -162,6 +162,9 @@ const COMPARED_LENGTH: usize = 32;
 
 /// Advice about a name before parentheses that no function has.
 pub(super) fn advise_function(name: &str) -> Option<String> {
+    if predefined(name).is_some() {
+        return Some("write * for a product".into());
+    }
     let elsewhere = ELSEWHERE.into_iter().find(|(other, _)| *other == name);
     if let Some((_, advice)) = elsewhere {
         return Some(advice.into());
@@ -188,11 +191,6 @@ pub(super) fn advise_number<'a>(
         .find(|(other, _)| *other == name)
     {
         return Some(advice.into());
-    }
-    if Callable::from_name(name).is_some() {
-        return Some(format!(
-            "write {name}(...) with its arguments in parentheses"
-        ));
     }
     if let Some((_, advice)) = ELSEWHERE.into_iter().find(|(other, _)| *other == name) {
         return Some(advice.into());
