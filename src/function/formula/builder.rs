@@ -22,6 +22,7 @@ pub struct FormulaBuilder {
     text: String,
     operations: Vec<Operation>,
     spans: Vec<Range<usize>>,
+    /// Where the value of each operation stands, folded ones included.
     positions: HashMap<Operation, NodeId>,
 }
 
@@ -44,13 +45,23 @@ impl FormulaBuilder {
     /// they are, for the evaluator to refuse. No other law of algebra is applied: `x - x` keeps
     /// the domain of `x`.
     pub fn push(&mut self, operation: Operation, span: Range<usize>) -> NodeId {
-        let operation = match self.fold(&operation) {
-            Some(value) => Operation::Rational(value),
-            None => operation,
-        };
         if let Some(&position) = self.positions.get(&operation) {
             return position;
         }
+        let Some(value) = self.fold(&operation) else {
+            return self.append(operation, span);
+        };
+        let constant = Operation::Rational(value);
+        let position = match self.positions.get(&constant) {
+            Some(&position) => position,
+            None => self.append(constant, span),
+        };
+        // The same arithmetic is not done twice.
+        self.positions.insert(operation, position);
+        position
+    }
+
+    fn append(&mut self, operation: Operation, span: Range<usize>) -> NodeId {
         let position = self.operations.len();
         self.positions.insert(operation.clone(), position);
         self.operations.push(operation);
