@@ -86,7 +86,7 @@ pub fn is_reserved(name: &str) -> bool {
 }
 
 /// Names from elsewhere, and how they are written here.
-const ELSEWHERE: [(&str, &str); 44] = [
+const ELSEWHERE: [(&str, &str); 41] = [
     ("ln", "write log"),
     ("loge", "write log"),
     ("lg", "write log10, or log2 where the base is 2"),
@@ -128,9 +128,6 @@ const ELSEWHERE: [(&str, &str); 44] = [
     ("sh", "write sinh"),
     ("ch", "write cosh"),
     ("th", "write tanh"),
-    ("math", "write the function without the name of its module"),
-    ("np", "write the function without the name of its module"),
-    ("std", "write the function without the name of its module"),
 ];
 
 /// Numbers from elsewhere, by their names in `<math.h>`, Rust and mathematics.
