@@ -3,6 +3,7 @@
 use rug::{Complete, Float};
 
 use crate::approximant::polynomial::Polynomial;
+use crate::function::constant::Constant;
 use crate::function::exact::Centre;
 use crate::number::ball::Ball;
 
@@ -67,11 +68,14 @@ fn local_variable(
         let beta = step / width;
         return (Ball::from_rational(&alpha, precision), Ball::from_rational(&beta, precision));
     }
-    let width = polynomial.scale.ball(precision);
+    let enclosed = |constant: &Constant| {
+        constant.ball(precision).unwrap_or_else(|| Ball::whole(precision))
+    };
+    let width = enclosed(&polynomial.scale);
     let quotient = |numerator: &Ball| {
         numerator.div(&width).unwrap_or_else(|| Ball::whole(precision))
     };
-    let alpha = quotient(&centre.ball(precision).sub(&polynomial.origin.ball(precision)));
+    let alpha = quotient(&centre.ball(precision).sub(&enclosed(&polynomial.origin)));
     let beta = quotient(&Ball::from_rational(&step, precision));
     (alpha, beta)
 }

@@ -1,6 +1,6 @@
 //! Constants of an audit: ends of pieces and claims, knots, origins and scales.
 
-use rug::float::Round;
+use rug::float::{Round, Special};
 use rug::{Float, Rational};
 
 use super::formula::{Formula, FormulaBuilder, Operation};
@@ -9,8 +9,6 @@ use super::range::range;
 use crate::number::ball::Ball;
 use crate::number::literal;
 use crate::number::wide_interval::WideInterval;
-
-mod value;
 
 #[cfg(test)]
 mod tests;
@@ -108,6 +106,17 @@ impl Constant {
         }
         let value = self.interval(precision.saturating_add(GUARD_BITS))?;
         Some(Ball::from_bounds(value.lower(), value.upper(), precision))
+    }
+
+    /// Encloses the value, rounded outward; the whole line where it could not be shown to exist.
+    pub fn wide_interval(&self, precision: u32) -> WideInterval {
+        match self.as_rational() {
+            Some(value) => WideInterval::from_rational(value, precision),
+            None => self.interval(precision).unwrap_or_else(|| {
+                let end = |special| Float::with_val(precision, special);
+                WideInterval::new(end(Special::NegInfinity), end(Special::Infinity))
+            }),
+        }
     }
 
     /// Encloses a value that is not known to be rational.

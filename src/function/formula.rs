@@ -160,17 +160,6 @@ impl Formula {
         builder.finish(root)
     }
 
-    /// The same operations up to `node`, whose value becomes the value of the formula.
-    #[must_use]
-    pub fn with_root(&self, node: NodeId) -> Self {
-        Self {
-            operations: self.operations[..=node].to_vec(),
-            spans: self.spans[..=node].to_vec(),
-            root: node,
-            text: self.text.clone(),
-        }
-    }
-
     /// True if the value does not depend on the variable.
     pub fn is_constant(&self) -> bool {
         !self
