@@ -1,5 +1,6 @@
-//! The audit file: reading it, checking it, and saying where it is wrong.
+//! The audit file: reading it, checking it, saying where it is wrong, and carrying it out.
 
 pub mod diagnostic;
 pub mod document;
 pub mod file;
+pub mod run;

@@ -5,6 +5,10 @@
 
 pub mod approximant;
 pub mod audit;
+pub mod bound;
+pub mod certificate;
 pub mod claim;
+pub mod cli;
 pub mod function;
 pub mod number;
+pub mod output;

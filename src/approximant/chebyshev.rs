@@ -13,6 +13,16 @@ pub enum FirstCoefficient {
     Halved,
 }
 
+impl FirstCoefficient {
+    /// The word of the audit file.
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::Full => "full",
+            Self::Halved => "halved",
+        }
+    }
+}
+
 /// The coefficients a_k with sum_k a_k t^k = sum_k c_k T_k(t) exactly (c_0 / 2 where halved).
 ///
 /// Clenshaw's recurrence carried out on polynomials: with b_{n+1} = b_{n+2} = 0 and

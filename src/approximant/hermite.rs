@@ -19,6 +19,16 @@ pub enum Scaling {
     Stored,
 }
 
+impl Scaling {
+    /// The word of the audit file.
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::RunTime => "run-time",
+            Self::Stored => "stored",
+        }
+    }
+}
+
 /// The data in the unit variable: `taylor[j]` w^j, exactly.
 pub fn multiply_by_powers_of_width(
     taylor: &[Rational],

@@ -10,10 +10,13 @@ use crate::approximant::polynomial::Polynomial;
 use crate::approximant::power::{Order, Parity, Variable};
 use crate::function::constant::Constant;
 use crate::function::formula::Formula;
-use crate::function::parser::{ConstantValue, Step};
 use crate::number::format::Format;
 
 /// The function of a piece, exactly.
+#[allow(
+    clippy::large_enum_variant,
+    reason = "nearly every piece is the larger variant"
+)]
 #[derive(Clone, Debug)]
 pub enum Form {
     Polynomial(Polynomial),
@@ -59,6 +62,13 @@ pub enum Owner {
     Right,
 }
 
+/// A constant of straight-line steps.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum StepConstant {
+    Number(Rational),
+    Array(Vec<Rational>),
+}
+
 /// How the stored numbers define the pieces.
 #[derive(Clone, Debug)]
 pub enum Basis {
@@ -80,8 +90,11 @@ pub enum Basis {
     Hermite {
         scaling: Scaling,
     },
-    /// The constants as stored, in the order of the file, and the code.
-    Steps { constants: Vec<(String, ConstantValue)>, steps: Vec<Step> },
+    /// The constants as stored, in the order of the file, and the code as written.
+    Steps {
+        constants: Vec<(String, StepConstant)>,
+        steps: Vec<String>,
+    },
 }
 
 /// What rounding to the storage format did.

@@ -204,7 +204,7 @@ impl Reader<'_> {
         let rounded = match end.as_rational() {
             Some(value) => Some(format.round(value)),
             None => PRECISIONS.iter().find_map(|&precision| {
-                let (lower, upper) = end.enclosure(precision);
+                let (lower, upper) = end.enclosure(precision)?;
                 let rounded = format.round(&lower);
                 (rounded.value == format.round(&upper).value).then_some(rounded)
             }),
