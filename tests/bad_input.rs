@@ -124,6 +124,7 @@ const CASES: &[Case] = &[
     Case { file: "program-format.audit.toml", line: Some(18), message: "an unknown format" },
     Case { file: "integer-too-long.audit.toml", line: Some(10), message: "put the number in quotes" },
     Case { file: "end-without-value.audit.toml", line: Some(10), message: "this constant is not proved to have a value" },
+    Case { file: "piece-without-brackets.audit.toml", line: Some(10), message: "an array is needed here" },
 ];
 
 fn folder() -> PathBuf {
