@@ -160,4 +160,40 @@ impl Formula {
             .iter()
             .any(|operation| matches!(operation, Operation::Variable))
     }
+
+    /// The value of one operation as a formula, without the operations that it does not need. The
+    /// text and the spans stay those of the whole.
+    pub fn with_root(&self, node: NodeId) -> Self {
+        let needed = builder::needed(&self.operations, node);
+        self.clone().restricted(node, &needed).0
+    }
+
+    /// Keeps the operations marked in `needed`, which include the root and all operands, and tells
+    /// where each of them stands then.
+    fn restricted(self, root: NodeId, needed: &[bool]) -> (Self, Vec<Option<NodeId>>) {
+        let mut operations = Vec::new();
+        let mut spans = Vec::new();
+        let mut positions = vec![None; self.operations.len()];
+        let listed = self.operations.into_iter().zip(self.spans);
+        for (position, (operation, span)) in listed.enumerate() {
+            if needed[position] {
+                positions[position] = Some(operations.len());
+                operations.push(builder::moved(operation, |operand| {
+                    positions[operand].unwrap_or(operand)
+                }));
+                spans.push(span);
+            }
+        }
+        let root = positions[root].unwrap_or(root);
+        let text = self.text;
+        (
+            Self {
+                operations,
+                spans,
+                root,
+                text,
+            },
+            positions,
+        )
+    }
 }
