@@ -10,6 +10,7 @@ use crate::approximant::polynomial::Polynomial;
 use crate::approximant::power::{Order, Parity, Variable};
 use crate::function::constant::Constant;
 use crate::function::formula::Formula;
+use crate::function::parser::{ConstantValue, Step};
 use crate::number::format::Format;
 
 /// The function of a piece, exactly.
@@ -62,13 +63,6 @@ pub enum Owner {
     Right,
 }
 
-/// A constant of straight-line steps.
-#[derive(Clone, Debug, PartialEq, Eq)]
-pub enum StepConstant {
-    Number(Rational),
-    Array(Vec<Rational>),
-}
-
 /// How the stored numbers define the pieces.
 #[derive(Clone, Debug)]
 pub enum Basis {
@@ -90,10 +84,10 @@ pub enum Basis {
     Hermite {
         scaling: Scaling,
     },
-    /// The constants as stored, in the order of the file, and the code as written.
+    /// The constants as stored, in the order of the file, and the code.
     Steps {
-        constants: Vec<(String, StepConstant)>,
-        steps: Vec<String>,
+        constants: Vec<(String, ConstantValue)>,
+        steps: Vec<Step>,
     },
 }
 

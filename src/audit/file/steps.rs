@@ -2,11 +2,10 @@
 
 use std::ops::Range;
 
-use crate::approximant::piece::{Basis, Form, Piece, StepConstant, Stored};
+use crate::approximant::piece::{Basis, Form, Piece, Stored};
 use crate::audit::document::{Node, Value};
-use crate::function::formula::Formula;
 use crate::function::parser::{
-    ConstantTable, ConstantValue, Element, Step, StepError, parse_steps,
+    ConstantTable, ConstantValue, Element, ParsedSteps, Step, StepError, parse_steps,
 };
 
 use super::approximant::Content;
@@ -27,7 +26,7 @@ const ON: &str = "write the two ends of the domain: on = [\"0\", \"1\"]";
 #[derive(Default)]
 struct Constants {
     table: ConstantTable,
-    listed: Vec<(String, StepConstant)>,
+    listed: Vec<(String, ConstantValue)>,
 }
 
 pub(super) fn read(
@@ -51,17 +50,17 @@ pub(super) fn read(
     let at = reader.required(table, "steps", STEPS)?;
     let elements = reader.array(at, STEPS)?;
     let constants = constants?;
-    let (formula, steps) = read_steps(reader, at, elements, &constants)?;
+    let parsed = read_steps(reader, at, elements, &constants)?;
     let piece = Piece {
         on: on?,
-        form: Form::Formula(formula),
+        form: Form::Formula(parsed.formula),
         written: None,
         stored: Stored::Steps,
     };
     Some(Content {
         basis: Basis::Steps {
             constants: constants.listed,
-            steps,
+            steps: parsed.steps,
         },
         pieces: vec![piece],
     })
@@ -88,10 +87,6 @@ fn read_constants(reader: &mut Reader<'_>, at: At<'_>, storage: &mut Storage) ->
             reader.key_error(&table, entry, error.message, advice);
             clean = false;
         }
-        let value = match value {
-            ConstantValue::Number(number) => StepConstant::Number(number),
-            ConstantValue::Array(numbers) => StepConstant::Array(numbers),
-        };
         constants.listed.push((entry.key.to_string(), value));
     }
     clean.then_some(constants)
@@ -102,7 +97,7 @@ fn read_steps(
     at: At<'_>,
     elements: &[Node],
     constants: &Constants,
-) -> Option<(Formula, Vec<String>)> {
+) -> Option<ParsedSteps> {
     let mut texts = Vec::new();
     for element in elements {
         if let Some(text) = reader.text(at.to(element), STEPS) {
@@ -119,8 +114,7 @@ fn read_steps(
             for (step, element) in parsed.steps.iter().zip(elements) {
                 clean &= check_step_format(reader, at.to(element), step);
             }
-            let texts = texts.into_iter().map(str::to_owned).collect();
-            clean.then_some((parsed.formula, texts))
+            clean.then_some(parsed)
         }
         Err(StepError { step, error }) => {
             const TITLE: &str = "these steps cannot be read";
