@@ -123,6 +123,8 @@ const CASES: &[Case] = &[
     Case { file: "steps-bare-float.audit.toml", line: Some(8), message: r#"write it in quotes: "0.5""# },
     Case { file: "program-format.audit.toml", line: Some(18), message: "an unknown format" },
     Case { file: "integer-too-long.audit.toml", line: Some(10), message: "put the number in quotes" },
+    Case { file: "end-without-value.audit.toml", line: Some(10), message: "this constant is not proved to have a value" },
+    Case { file: "piece-without-brackets.audit.toml", line: Some(10), message: "an array is needed here" },
 ];
 
 fn folder() -> PathBuf {

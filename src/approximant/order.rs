@@ -67,9 +67,6 @@ mod tests {
 
     #[test]
     fn equal_values_that_no_enclosure_separates_are_undecided() {
-        assert_eq!(
-            compare(&constant("log(2)"), &constant("log(4)/2")),
-            None
-        );
+        assert_eq!(compare(&constant("log(2)"), &constant("log(4)/2")), None);
     }
 }

@@ -14,6 +14,10 @@ use crate::function::parser::{ConstantValue, Step};
 use crate::number::format::Format;
 
 /// The function of a piece, exactly.
+#[allow(
+    clippy::large_enum_variant,
+    reason = "nearly every piece is the larger variant"
+)]
 #[derive(Clone, Debug)]
 pub enum Form {
     Polynomial(Polynomial),
@@ -81,7 +85,10 @@ pub enum Basis {
         scaling: Scaling,
     },
     /// The constants as stored, in the order of the file, and the code.
-    Steps { constants: Vec<(String, ConstantValue)>, steps: Vec<Step> },
+    Steps {
+        constants: Vec<(String, ConstantValue)>,
+        steps: Vec<Step>,
+    },
 }
 
 /// What rounding to the storage format did.

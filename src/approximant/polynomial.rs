@@ -6,7 +6,7 @@ use rug::Rational;
 
 use crate::function::constant::Constant;
 
-/// x -> sum_k coefficients[k] ((x - origin)/scale)^k, exactly. The scale is not 0.
+/// x -> sum_k `coefficients[k]` ((x - origin)/scale)^k, exactly. The scale is not 0.
 #[derive(Clone, Debug)]
 pub struct Polynomial {
     /// Where the local variable is 0.

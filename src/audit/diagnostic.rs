@@ -141,6 +141,23 @@ pub fn quoted(text: &str) -> String {
     format!("{shown:?}")
 }
 
+/// A message without control characters: parts of it come from files, and must neither break the
+/// layout nor reach the terminal as commands.
+fn printable(text: String) -> String {
+    if !text.contains(char::is_control) {
+        return text;
+    }
+    let mut shown = String::with_capacity(text.len());
+    for character in text.chars() {
+        if character.is_control() {
+            shown.extend(character.escape_default());
+        } else {
+            shown.push(character);
+        }
+    }
+    shown
+}
+
 impl Diagnostic {
     /// An error at a place.
     pub fn error(
@@ -154,9 +171,9 @@ impl Diagnostic {
             severity: Severity::Error,
             file: file.to_owned(),
             place,
-            title: title.into(),
-            found: found.into(),
-            advice: advice.into(),
+            title: printable(title.into()),
+            found: printable(found.into()),
+            advice: printable(advice.into()),
         }
     }
 
@@ -287,6 +304,22 @@ mod tests {
             let rendered = at(text, span);
             assert!(rendered.contains("found this"), "{rendered}");
         }
+    }
+
+    #[test]
+    fn no_control_character_of_a_file_reaches_the_terminal() {
+        let text = "a = \"\u{1b}[31m\"";
+        let place = Place::new(text, 4..10);
+        let message = Diagnostic::error("a", Some(place), "\u{7}", "\u{1b}[31m", "b\nc");
+        assert_eq!(
+            (message.found.as_str(), message.advice.as_str()),
+            ("\\u{1b}[31m", "b\\nc")
+        );
+        let rendered = message.render();
+        assert!(
+            rendered.chars().all(|c| c == '\n' || !c.is_control()),
+            "{rendered:?}"
+        );
     }
 
     #[test]

@@ -3,6 +3,23 @@
 //! Reading does everything that needs no proof: it reads numbers exactly, rounds them to the
 //! storage format where one is declared, converts every polynomial basis exactly to powers, and
 //! refuses what has no clear meaning. Nothing is guessed.
+//!
+//! # Conventions of the file
+//!
+//! - `stored_as` and `ends_stored_as` are "exact" where they are not given. `ends_stored_as`
+//!   rounds knots, piece ends, and the ends of claims about that approximation.
+//! - `order` is needed for power and Chebyshev series; Bernstein coefficients begin with that of
+//!   the left end unless `order = "descending"`. `parity` may be given for Chebyshev series too:
+//!   only T_1, T_3, ... or T_0, T_2, ... are listed.
+//! - Hermite data are given at `knots` that neighbours share or, with
+//!   `pieces = [{ on, left, right }]`, at both ends of every piece. `scaling` is "run-time" (as
+//!   without the key) or "stored": the numbers are f^(j) w^j / j! with the width w of the piece, so
+//!   a shared knot with derivatives lies between pieces of the same width.
+//! - An array may stand in a JSON file: `{ file = "table.json", key = "model.pieces" }`, a key, keys
+//!   with points between them, or no key where the file is the array. This holds for `pieces`,
+//!   `knots`, `coefficients`, `taylor`, `left`, `right` and the arrays among the constants of steps.
+//! - A single approximation has the id "approximant" unless it gives one.
+//! - `$schema` may name a schema for editors and has no meaning here.
 
 mod approximant;
 mod claims;

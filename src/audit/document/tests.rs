@@ -188,7 +188,7 @@ fn the_depth_limit_is_exact_and_ignores_strings_comments_and_siblings() {
             "a = '{brackets}'\nb = '''\n{brackets}''''\nc = \"\"\"\\\"\"\"{brackets}\"\"\"\"\""
         ),
         format!("a = [{}]", "[1.5], ".repeat(100)),
-        "a.b = 1.5\n".repeat(1) + &"c.d.e = 2\n".replace('c', "f"),
+        "a.b.c.d.e.f.g.h = 1.5\n".replace('a', &"x".repeat(100)) + "i.j = 2\n",
     ];
     for text in texts {
         assert!(toml(&text).is_ok(), "{text}");

@@ -191,19 +191,17 @@ fn read_pieces(
         return None;
     }
     let mut pieces = Vec::new();
-    let mut intervals = Vec::new();
     for element in elements {
         let Some((on, left, right)) = read_piece(reader, at.to(element), storage) else {
             continue;
         };
-        if let Some(piece) = convert(reader, at.to(element), on.clone(), &left, &right, scaling) {
+        if let Some(piece) = convert(reader, at.to(element), on, &left, &right, scaling) {
             pieces.push(piece);
         }
-        intervals.push(on);
     }
-    let fit =
-        intervals.len() == elements.len() && check_neighbours(reader, at, elements, &intervals);
-    (fit && pieces.len() == elements.len()).then_some(pieces)
+    // Neighbours can be compared only where every piece was understood.
+    let fit = pieces.len() == elements.len() && check_neighbours(reader, at, elements, &pieces);
+    fit.then_some(pieces)
 }
 
 fn read_piece(
@@ -276,7 +274,7 @@ fn convert(
     let written = is_changed.then(|| polynomial(left.as_written(), right.as_written()));
     match (polynomial(&left.stored, &right.stored), written.transpose()) {
         (Ok(stored), Ok(written)) => Some(Piece {
-            on: on.clone(),
+            on,
             form: Form::Polynomial(stored),
             written,
             stored: Stored::Ends {

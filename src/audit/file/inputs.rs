@@ -117,6 +117,11 @@ impl Reader<'_> {
             let elements = self.array(at, advice)?;
             return read(self, at, elements);
         };
+        let is_known = |key: &str| KEYS.contains(&key) || LATER_KEYS.contains(&key);
+        if !entries.iter().any(|entry| is_known(&entry.key)) {
+            self.wrong_kind(at, "an array", advice);
+            return None;
+        }
         let table = Table { at, entries };
         let document = self.load(&table)?;
         let root = At::root(&document);

@@ -18,6 +18,9 @@ use super::reader::{At, Reader};
 const NUMBER: &str =
     "write a number in quotes: \"0.1\", \"-1e-7\", \"0x1.8p-3\", \"1/3\" or \"2^-58\"";
 
+/// Bits of the enclosure that shows that a constant has a value.
+const PRECISION: u32 = 128;
+
 /// How ends are written.
 const END: &str = "write a number or a constant formula in quotes: \"0.5\", \"-pi/4\"";
 
@@ -101,7 +104,17 @@ impl Reader<'_> {
             return None;
         }
         match Constant::parse(text) {
-            Ok(constant) => Some(constant),
+            Ok(constant) if constant.enclosure(PRECISION).is_some() => Some(constant),
+            Ok(_) => {
+                let found = quoted(text);
+                self.error(
+                    at,
+                    "this constant is not proved to have a value",
+                    found,
+                    END,
+                );
+                None
+            }
             Err(error) => {
                 self.syntax_error(at, text, &error, "this is not a constant", END);
                 None

@@ -3,6 +3,7 @@
 use std::cmp::Ordering;
 
 use crate::approximant::order::compare;
+use crate::approximant::piece::Piece;
 use crate::audit::diagnostic::quoted;
 use crate::audit::document::Node;
 use crate::function::constant::Constant;
@@ -34,17 +35,19 @@ pub(super) fn check_count(
     true
 }
 
-/// Reports pieces that are out of order, overlap, or leave a gap. Each interval is known to go
+/// Reports pieces that are out of order, overlap, or leave a gap. Each piece is known to go
 /// from left to right; `nodes` are the places of the pieces.
 pub(super) fn check_neighbours(
     reader: &mut Reader<'_>,
     at: At<'_>,
     nodes: &[Node],
-    intervals: &[[Constant; 2]],
+    pieces: &[Piece],
 ) -> bool {
     let mut fit = true;
-    for (index, pair) in intervals.windows(2).enumerate() {
-        let [before, after] = pair else { continue };
+    for (index, pair) in pieces.windows(2).enumerate() {
+        let [Piece { on: before, .. }, Piece { on: after, .. }] = pair else {
+            continue;
+        };
         let (title, advice) = match compare(&before[1], &after[0]) {
             Some(Ordering::Equal) => continue,
             Some(Ordering::Less) => (

@@ -232,19 +232,17 @@ fn read_pieces(
         return None;
     }
     let mut pieces = Vec::new();
-    let mut intervals = Vec::new();
     for element in elements {
         let Some((on, list)) = read_piece(reader, at.to(element), storage) else {
             continue;
         };
-        if let Some(piece) = convert(reader, at.to(element), settings, &on, &list) {
+        if let Some(piece) = convert(reader, at.to(element), settings, on, &list) {
             pieces.push(piece);
         }
-        intervals.push(on);
     }
-    let fit =
-        intervals.len() == elements.len() && check_neighbours(reader, at, elements, &intervals);
-    (fit && pieces.len() == elements.len()).then_some(pieces)
+    // Neighbours can be compared only where every piece was understood.
+    let fit = pieces.len() == elements.len() && check_neighbours(reader, at, elements, &pieces);
+    fit.then_some(pieces)
 }
 
 fn read_piece(
@@ -271,10 +269,10 @@ fn convert(
     reader: &mut Reader<'_>,
     at: At<'_>,
     settings: &Settings,
-    on: &[Constant; 2],
+    on: [Constant; 2],
     list: &StoredList,
 ) -> Option<Piece> {
-    let (origin, scale) = match power::origin_and_scale(&settings.variable, on) {
+    let (origin, scale) = match power::origin_and_scale(&settings.variable, &on) {
         Ok(pair) => pair,
         Err(error) => {
             let advice = "write the ends as numbers or as shorter formulas";
@@ -301,7 +299,7 @@ fn convert(
     };
     match (polynomial(&list.stored), written.transpose()) {
         (Ok(stored), Ok(written)) => Some(Piece {
-            on: on.clone(),
+            on,
             form: Form::Polynomial(stored),
             written,
             stored: Stored::Coefficients(list.stored.clone()),

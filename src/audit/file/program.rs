@@ -24,7 +24,13 @@ const FORMAT: &str = "write a format in quotes: \"binary64\", \"binary32\", \"bi
 
 /// Formats of arithmetic that have a name of their own.
 const NAMES: [&str; 8] = [
-    "binary16", "bfloat16", "binary32", "binary64", "binary128", "decimal32", "decimal64",
+    "binary16",
+    "bfloat16",
+    "binary32",
+    "binary64",
+    "binary128",
+    "decimal32",
+    "decimal64",
     "decimal128",
 ];
 

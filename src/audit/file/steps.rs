@@ -22,6 +22,13 @@ const STEPS: &str = "write steps = [\"z = x*x\", \"y = x + x*z*S1\"]; the last o
 const CONSTANTS: &str = "write constants = { S1 = \"0.5\", a = [\"1\", \"0.5\"] }";
 const ON: &str = "write the two ends of the domain: on = [\"0\", \"1\"]";
 
+/// The constants for the parser, and in the order of the file.
+#[derive(Default)]
+struct Constants {
+    table: ConstantTable,
+    listed: Vec<(String, ConstantValue)>,
+}
+
 pub(super) fn read(
     reader: &mut Reader<'_>,
     table: &Table<'_>,
@@ -35,25 +42,34 @@ pub(super) fn read(
     }
     let constants = match table.get("constants") {
         Some(at) => read_constants(reader, at, storage),
-        None => Some(Vec::new()),
+        None => Some(Constants::default()),
     };
-    let on = reader.required(table, "on", ON).and_then(|at| reader.piece_ends(at, storage));
+    let on = reader
+        .required(table, "on", ON)
+        .and_then(|at| reader.piece_ends(at, storage));
     let at = reader.required(table, "steps", STEPS)?;
     let elements = reader.array(at, STEPS)?;
     let constants = constants?;
     let parsed = read_steps(reader, at, elements, &constants)?;
-    let piece =
-        Piece { on: on?, form: Form::Formula(parsed.formula), written: None, stored: Stored::Steps };
-    Some(Content { basis: Basis::Steps { constants, steps: parsed.steps }, pieces: vec![piece] })
+    let piece = Piece {
+        on: on?,
+        form: Form::Formula(parsed.formula),
+        written: None,
+        stored: Stored::Steps,
+    };
+    Some(Content {
+        basis: Basis::Steps {
+            constants: constants.listed,
+            steps: parsed.steps,
+        },
+        pieces: vec![piece],
+    })
 }
 
-fn read_constants(
-    reader: &mut Reader<'_>,
-    at: At<'_>,
-    storage: &mut Storage,
-) -> Option<Vec<(String, ConstantValue)>> {
+fn read_constants(reader: &mut Reader<'_>, at: At<'_>, storage: &mut Storage) -> Option<Constants> {
     let table = reader.table(at, CONSTANTS)?;
-    let mut constants = Vec::new();
+    let mut constants = Constants::default();
+    let mut clean = true;
     for entry in table.entries {
         let at = table.at.to(&entry.node);
         let value = match &entry.node.value {
@@ -62,22 +78,16 @@ fn read_constants(
                 .map(|list| ConstantValue::Array(list.stored.to_vec())),
             _ => reader.stored_number(at, storage).map(ConstantValue::Number),
         };
-        if let Some(value) = value {
-            constants.push((entry.key.to_string(), value));
-        }
-    }
-    if constants.len() != table.entries.len() {
-        return None;
-    }
-    // Inserted one by one here so that each name is reported at its place.
-    let mut names = ConstantTable::new();
-    let mut clean = true;
-    for (entry, (name, value)) in table.entries.iter().zip(&constants) {
-        if let Err(error) = names.insert(name, value.clone()) {
+        let Some(value) = value else {
+            clean = false;
+            continue;
+        };
+        if let Err(error) = constants.table.insert(&entry.key, value.clone()) {
             let advice = error.advice.unwrap_or_else(|| CONSTANTS.to_owned());
             reader.key_error(&table, entry, error.message, advice);
             clean = false;
         }
+        constants.listed.push((entry.key.to_string(), value));
     }
     clean.then_some(constants)
 }
@@ -86,12 +96,8 @@ fn read_steps(
     reader: &mut Reader<'_>,
     at: At<'_>,
     elements: &[Node],
-    constants: &[(String, ConstantValue)],
+    constants: &Constants,
 ) -> Option<ParsedSteps> {
-    let mut table = ConstantTable::new();
-    for (name, value) in constants {
-        table.insert(name, value.clone()).ok()?;
-    }
     let mut texts = Vec::new();
     for element in elements {
         if let Some(text) = reader.text(at.to(element), STEPS) {
@@ -101,7 +107,7 @@ fn read_steps(
     if texts.len() != elements.len() {
         return None;
     }
-    match parse_steps(&texts, &table, &[]) {
+    match parse_steps(&texts, &constants.table, &[]) {
         Ok(parsed) => {
             note_integer_division(reader, at, elements, &parsed.steps, &texts);
             let mut clean = true;

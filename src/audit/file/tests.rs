@@ -138,7 +138,7 @@ fn the_hermite_example_is_read() {
     let coefficients = &polynomial(&approximant.pieces[0]).coefficients;
     let mut slope = Rational::new();
     for (power, coefficient) in coefficients.iter().enumerate() {
-        slope += Rational::from(coefficient * Rational::from(power));
+        slope += coefficient * Rational::from(power);
     }
     assert_eq!(slope * 2, number("0x1.a61298e1e069cp+0"));
 
@@ -315,7 +315,7 @@ fn irrational_ends_are_exact_and_keep_their_pieces_together() {
     );
     let scale = &polynomial(&pieces(&file)[0]).scale;
     assert!(scale.as_rational().is_none());
-    let (lower, upper) = scale.enclosure(128);
+    let (lower, upper) = scale.enclosure(128).unwrap();
     assert!(lower < number("1.5707963267948966193") && upper > number("1.5707963267948966192"));
     assert_eq!(file.claims[0].targets[0].on[0].text(), "-pi/4");
     let error = refusal(&format!(
@@ -387,14 +387,10 @@ fn several_approximants_have_their_own_references_and_claims() {
          {CLAIM}\n{CLAIM}approximant = \"high\"\nexcept = [[\"0.25\", \"0.25\"]]\n"
     );
     let file = parse(&text);
-    let formulas: Vec<&str> = file
-        .approximants
-        .iter()
-        .map(|audited| match &audited.reference {
-            Reference::Formula(formula) => formula.text(),
-        })
-        .collect();
-    assert_eq!(formulas, ["exp(x)", "cos(x)"]);
+    assert_eq!(
+        [0, 1].map(|position| file.reference_of(position).text()),
+        ["exp(x)", "cos(x)"]
+    );
     let targets = |claim: usize| -> Vec<usize> {
         file.claims[claim]
             .targets
@@ -515,11 +511,18 @@ fn steps_are_the_function_of_their_stored_constants() {
     let Form::Formula(formula) = &approximant.pieces[0].form else {
         panic!("a formula was expected");
     };
-    for (constant, present) in
-        [("0x1.99999ap-4", true), ("0.1", false), ("-0x1.555556p-3", true), ("2/3", true)]
-    {
+    for (constant, present) in [
+        ("0x1.99999ap-4", true),
+        ("0.1", false),
+        ("-0x1.555556p-3", true),
+        ("2/3", true),
+    ] {
         let operation = Operation::Rational(number(constant));
-        assert_eq!(formula.operations().contains(&operation), present, "{constant}");
+        assert_eq!(
+            formula.operations().contains(&operation),
+            present,
+            "{constant}"
+        );
     }
     // The hexadecimal literal that binary32 cannot hold, and the quotient of whole numbers.
     let notes: Vec<&str> = file.notes.iter().map(|note| note.title.as_str()).collect();
@@ -534,12 +537,12 @@ fn steps_are_the_function_of_their_stored_constants() {
 }
 
 #[test]
-fn a_hundred_thousand_pieces_are_read() {
+fn twenty_thousand_pieces_are_read() {
     let mut text = format!(
         "{REFERENCE}{CLAIM}[approximant]\nbasis = \"power\"\nvariable = \"x-left\"\n\
          order = \"ascending\"\nstored_as = \"binary64\"\npieces = [\n"
     );
-    for index in 0..100_000 {
+    for index in 0..20_000 {
         writeln!(
             text,
             "  {{ on = [\"{index}\", \"{}\"], coefficients = [\"0.1\", \"0x1.8p-3\", \"3\"] }},",
@@ -548,7 +551,7 @@ fn a_hundred_thousand_pieces_are_read() {
         .expect("text");
     }
     text.push_str("]\n");
-    assert_eq!(pieces(&parse(&text)).len(), 100_000);
+    assert_eq!(pieces(&parse(&text)).len(), 20_000);
 }
 
 #[test]
