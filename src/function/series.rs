@@ -274,23 +274,13 @@ impl<'a> Evaluation<'a> {
                 .arithmetic
                 .product(&self.nodes[*left], &self.nodes[*right]),
             Operation::Divide(left, right) => return self.divide(node, *left, *right),
-            Operation::PowerInteger(base, exponent) => {
-                let power = self
-                    .arithmetic
-                    .power_integer(&self.nodes[*base], exponent.unsigned_abs());
-                if *exponent >= 0 {
-                    power
-                } else {
-                    let one = PowerSeries::constant(Ball::one(precision));
-                    let base = self.nodes[*base].coefficient(0, precision);
-                    self.arithmetic.quotient(&one, &power).ok_or_else(|| {
-                        refused(
-                            node,
-                            Obstacle::new(RefusalKind::DivisionByZero, base.is_exact_zero()),
-                        )
-                    })?
-                }
-            }
+            Operation::PowerInteger(base, exponent) if *exponent >= 0 => self
+                .arithmetic
+                .power_integer(&self.nodes[*base], exponent.unsigned_abs()),
+            Operation::PowerInteger(base, exponent) => self
+                .arithmetic
+                .power_negative(&self.nodes[*base], *exponent)
+                .map_err(|obstacle| refused(node, obstacle))?,
             Operation::PowerRational(base, exponent) => self
                 .arithmetic
                 .power_rational(&self.nodes[*base], exponent)

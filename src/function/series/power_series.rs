@@ -402,10 +402,12 @@ impl Arithmetic {
     }
 
     /// y = u^r by Miller's recurrence: u y' = r u' y, so
-    /// k u_0 y_k = sum_{j=1..k} (r j - (k - j)) u_j y_{k-j}
-    ///           = sum_{j=1..k} (r s_j) y_{k-j} - sum_{j=1..k} u_j ((k-j) y_{k-j}).
+    /// k u_0 y_k = sum_{j=1..k} (r s_j - (k - j) u_j) y_{k-j}.
     /// `None` if u_0 contains 0. Valid for every real solution of the differential equation, so
     /// also for the real cube root of a negative u.
+    ///
+    /// The factor of y_{k-j} is formed first: two sums, one over r s_j y_{k-j}, cost as much, but
+    /// enlarge the radius of y_{k-j} by the sum of the two parts where they nearly cancel.
     pub(super) fn power(
         &mut self,
         u: &PowerSeries,
@@ -415,17 +417,21 @@ impl Arithmetic {
         let inverse = Ball::one(self.precision).div(u.coefficients.first()?)?;
         let scaled: Vec<Ball> = u.slopes().iter().map(|slope| slope.mul(exponent)).collect();
         let known = u.known.min(self.terms);
-        let mut result = Vec::with_capacity(known);
-        let mut slopes = Vec::with_capacity(known);
+        let mut result: Vec<Ball> = Vec::with_capacity(known);
         result.push(value);
-        slopes.push(self.zero());
         for k in 1..known {
             let mut total = self.zero();
-            self.accumulate(&mut total, &scaled, &result, k, (1, k));
-            self.diminish(&mut total, &u.coefficients, &slopes, k);
+            for j in 1..=k.min(u.coefficients.len() - 1) {
+                let rest = (k - j) as i64;
+                if !u.coefficients[j].is_exact_zero() && !result[k - j].is_exact_zero() {
+                    let mut weight = u.coefficients[j].mul_integer(-rest);
+                    weight.add_assign(&scaled[j]);
+                    total.add_product(&weight, &result[k - j]);
+                    self.work += 2;
+                }
+            }
             total.mul_assign(&inverse);
             result.push(total.div_integer(k as u64));
-            slopes.push(total);
         }
         self.work += known as u64;
         Some(PowerSeries::new(result, known))
