@@ -129,12 +129,14 @@ proptest! {
         let step = Rational::from(1) >> 300;
         prop_assert!(!a.contains_rational(&Rational::from(&high + &step)));
         prop_assert!(!a.contains_rational(&Rational::from(&low - &step)));
-        // Balls that touch or miss each other by little.
+        // A ball that touches this one, overlaps it a little or misses it a little.
         let mut c = Ball::from_midpoint(Float::with_val(400, &high), b.radius);
-        c.midpoint += b.radius.to_float_upper(30) << shift.min(1);
-        let apart = rational(&c.midpoint) - exact(c.radius) > high;
-        prop_assert!(apart || a.overlaps(&c));
-        prop_assert!(!(apart && shift > 0 && b.radius > a.radius.mul_power_of_two(-8)) || !a.overlaps(&c));
+        c.midpoint += b.radius.to_float_upper(30);
+        c.midpoint += (c.midpoint.clone() >> 40) * shift;
+        let distance = (rational(&c.midpoint) - &m).abs();
+        let reach = Rational::from(&r + &exact(b.radius));
+        prop_assert!(distance > reach || a.overlaps(&c) && c.overlaps(&a));
+        prop_assert!(distance <= reach * tight() || !a.overlaps(&c) && !c.overlaps(&a));
         let both = a.union(&b);
         let width = high.clone().max(upper_end(&b)) - low.clone().min(lower_end(&b));
         prop_assert!(exact(both.radius) * 2u32 <= width * tight() + unit(&both));

@@ -157,7 +157,7 @@ fn argument() -> impl Strategy<Value = Ball> {
 }
 
 proptest! {
-    #![proptest_config(ProptestConfig::with_cases(1500))]
+    #![proptest_config(ProptestConfig::with_cases(500))]
 
     #[test]
     fn every_function_encloses_and_is_tight(x in argument()) {
@@ -204,7 +204,7 @@ proptest! {
             value
         };
         for point in [&points[0], &points[3], &points[6]] {
-            let value = at(&Rational::from(Float::with_val(1000, point).to_rational().unwrap()));
+            let value = at(point);
             // The exponent of the oracle is rounded: exact powers differ by 2^-900 of their value.
             let mut image = image.clone();
             if let Some(binary) = value.get_exp() {
@@ -324,6 +324,6 @@ fn domains_end_where_they_should() {
     assert!(ball(1.0, step).asin().is_none() && ball(1.0, step).acosh().is_none());
     // A tangent goes up to its poles and not across.
     assert!(ball(0.0, 1.5).tan().is_some() && ball(0.0, 1.58).tan().is_none());
-    assert!(ball(1.57, 0.01).tan().is_none() && ball(3.14, 1.4).tan().is_some());
+    assert!(ball(1.57, 0.01).tan().is_none() && ball(3.0, 1.4).tan().is_some());
     assert!(ball(0.0, 3.2).tan().is_none() && ball(0.0, 1e300).tan().is_none());
 }
