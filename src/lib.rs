@@ -4,5 +4,11 @@
 //! `number -> function -> approximant -> bound -> claim -> audit -> certificate -> output -> cli`.
 
 pub mod approximant;
+pub mod audit;
+pub mod bound;
+pub mod certificate;
+pub mod claim;
+pub mod cli;
 pub mod function;
 pub mod number;
+pub mod output;

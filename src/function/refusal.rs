@@ -16,6 +16,18 @@ pub enum RefusalKind {
     Unbounded,
 }
 
+impl RefusalKind {
+    /// What the operation would have to be, to end the sentence "is not ...".
+    pub fn requirement(self) -> &'static str {
+        match self {
+            RefusalKind::DivisionByZero => "free of a division by zero",
+            RefusalKind::OutsideDomain => "inside its real domain",
+            RefusalKind::NotAnalytic => "analytic",
+            RefusalKind::Unbounded => "bounded",
+        }
+    }
+}
+
 /// An evaluation that could not be carried out on the whole set.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub struct Refusal {

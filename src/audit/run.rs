@@ -1,0 +1,216 @@
+//! Carries out the claims of an audit file: the plan, and its parallel run.
+//!
+//! A unit of the plan is one claim on one piece. Units share nothing and their results are
+//! collected in order, so the outcome does not depend on the number of threads.
+
+use rayon::prelude::*;
+
+use crate::approximant::piece::{Approximant, Owner};
+use crate::audit::file::AuditFile;
+use crate::bound::measure::Measure;
+use crate::bound::search::Undefined;
+use crate::claim::domain::{End, Part, intersection};
+use crate::claim::evaluation::{Effort, PieceOutcome, Summary, evaluate, summary};
+use crate::claim::model::{Claim, ErrorMeasure, Target};
+use crate::function::constant::Constant;
+
+/// Default tightness of an enclosure: upper/lower - 1.
+pub const TIGHTNESS: f64 = 1e-3;
+
+/// Units of work for one claim on one piece at effort 1.
+pub const BUDGET: u64 = 400_000_000;
+
+/// One claim about one approximant, carried out.
+#[derive(Clone, Debug)]
+pub struct ClaimOutcome {
+    /// Position of the claim in the audit file.
+    pub claim: usize,
+    /// Position of the approximant.
+    pub approximant: usize,
+    /// The set of arguments: closed intervals.
+    pub on: Vec<[Constant; 2]>,
+    /// Pieces that the claim is about, by position, with what is proved on them.
+    pub pieces: Vec<(usize, PieceOutcome)>,
+    /// The whole.
+    pub summary: Summary,
+}
+
+/// Why an audit could not be carried out: the input is at fault.
+#[derive(Clone, Debug)]
+pub enum AuditError {
+    /// A formula has no value at an argument of the claim.
+    Undefined {
+        /// Position of the approximant whose reference or steps it is.
+        approximant: usize,
+        /// Name of the claim.
+        claim: String,
+        /// Where and why.
+        undefined: Undefined,
+    },
+    /// A claim is left without any argument.
+    EmptySet {
+        /// Name of the claim.
+        claim: String,
+    },
+    /// An end such as "pi/4" could not be enclosed.
+    End {
+        /// The text of the end.
+        text: String,
+    },
+}
+
+/// One unit of the plan.
+struct Unit<'a> {
+    claim: &'a Claim,
+    approximant_index: usize,
+    approximant: &'a Approximant,
+    piece: usize,
+    parts: Vec<Part>,
+}
+
+/// Carries out every claim. `advance` is called once a unit from any thread.
+///
+/// # Errors
+///
+/// The first fault of the input, in the order of the plan.
+pub fn run(
+    file: &AuditFile,
+    effort: u32,
+    started: &(dyn Fn(u64) + Sync),
+    advance: &(dyn Fn() + Sync),
+) -> Result<Vec<ClaimOutcome>, AuditError> {
+    let mut outcomes = Vec::new();
+    let mut units = Vec::new();
+    for (claim_index, claim) in file.claims.iter().enumerate() {
+        for target in &claim.targets {
+            let on = set_of(target)?;
+            let first = units.len();
+            plan(file, claim, target, &on, &mut units)?;
+            if units.len() == first {
+                return Err(AuditError::EmptySet { claim: claim.id.clone() });
+            }
+            let on = on.into_iter().map(|(ends, _)| ends).collect();
+            outcomes.push((claim_index, target.approximant, on, first..units.len()));
+        }
+    }
+    started(units.len() as u64);
+    let effort = Effort {
+        tightness: TIGHTNESS,
+        budget: BUDGET.saturating_mul(u64::from(effort)),
+    };
+    let results: Vec<Result<PieceOutcome, AuditError>> = units
+        .par_iter()
+        .map(|unit| {
+            let result = carry_out(file, unit, &effort);
+            advance();
+            result
+        })
+        .collect();
+    let mut results = results.into_iter();
+    outcomes
+        .into_iter()
+        .map(|(claim, approximant, on, range)| {
+            let pieces = results.by_ref().take(range.len()).collect::<Result<Vec<_>, _>>()?;
+            let bound = file.claims[claim].at_most.as_ref().map(|bound| &bound.value);
+            let summary = summary(&pieces, bound);
+            let pieces = units[range].iter().map(|unit| unit.piece).zip(pieces).collect();
+            Ok(ClaimOutcome { claim, approximant, on, pieces, summary })
+        })
+        .collect()
+}
+
+fn carry_out(file: &AuditFile, unit: &Unit, effort: &Effort) -> Result<PieceOutcome, AuditError> {
+    let measure = match &unit.claim.measure {
+        ErrorMeasure::Absolute => Measure::Absolute,
+        ErrorMeasure::Relative => Measure::Relative,
+        ErrorMeasure::Mixed { absolute_part, relative_part } => Measure::Mixed {
+            absolute: absolute_part.clone(),
+            relative: relative_part.clone(),
+        },
+    };
+    evaluate(
+        file.reference_of(unit.approximant_index),
+        &unit.approximant.pieces[unit.piece],
+        &unit.parts,
+        &measure,
+        unit.claim.at_most.as_ref().map(|bound| &bound.value),
+        effort,
+    )
+    .map_err(|undefined| AuditError::Undefined {
+        approximant: unit.approximant_index,
+        claim: unit.claim.id.clone(),
+        undefined,
+    })
+}
+
+/// An interval of a claim with the enclosures of its ends.
+type Interval = ([Constant; 2], [End; 2]);
+
+/// The set of a claim: `on` without the `except` intervals, as closed intervals in order. (The
+/// supremum over a set and over its closure are the same for a continuous error.)
+fn set_of(target: &Target) -> Result<Vec<Interval>, AuditError> {
+    let both = |ends: &[Constant; 2]| Ok::<_, AuditError>((ends.clone(), enclosed(ends)?));
+    let mut except = target.except.iter().map(both).collect::<Result<Vec<_>, _>>()?;
+    except.sort_by(|(_, a), (_, b)| a[0].low.cmp(&b[0].low));
+    let (on, ends) = both(&target.on)?;
+    if except.is_empty() {
+        return Ok(vec![(on, ends)]);
+    }
+    let [on_left, on_right] = on;
+    let [left_end, right_end] = ends;
+    let mut left = (on_left, left_end);
+    let mut set = Vec::new();
+    for ([from, to], [from_end, to_end]) in except {
+        if from_end.low > left.1.low && from_end.low <= right_end.low {
+            set.push(([left.0.clone(), from], [left.1.clone(), from_end]));
+        }
+        if to_end.low > left.1.low {
+            left = (to, to_end);
+        }
+    }
+    if left.1.low < right_end.low {
+        set.push(([left.0, on_right], [left.1, right_end]));
+    }
+    Ok(set)
+}
+
+fn enclosed(ends: &[Constant; 2]) -> Result<[End; 2], AuditError> {
+    let end = |constant: &Constant| {
+        End::new(constant).ok_or_else(|| AuditError::End { text: constant.text().to_owned() })
+    };
+    Ok([end(&ends[0])?, end(&ends[1])?])
+}
+
+fn plan<'a>(
+    file: &'a AuditFile,
+    claim: &'a Claim,
+    target: &Target,
+    on: &[Interval],
+    units: &mut Vec<Unit<'a>>,
+) -> Result<(), AuditError> {
+    let approximant = &file.approximants[target.approximant].approximant;
+    let count = approximant.pieces.len();
+    for (index, piece) in approximant.pieces.iter().enumerate() {
+        let ends = enclosed(&piece.on)?;
+        let owned = match approximant.owner {
+            Owner::Right => [true, index + 1 == count],
+            Owner::Left => [index == 0, true],
+        };
+        let parts: Vec<Part> = intervals
+            .iter()
+            .filter_map(|(_, [left, right])| {
+                intersection([&ends[0], &ends[1]], owned, [left, right])
+            })
+            .collect();
+        if !parts.is_empty() {
+            units.push(Unit {
+                claim,
+                approximant_index: target.approximant,
+                approximant,
+                piece: index,
+                parts,
+            });
+        }
+    }
+    Ok(())
+}

@@ -1,0 +1,460 @@
+//! From a piece to a proved enclosure of the supremum: cells, splitting, pruning.
+
+use std::collections::VecDeque;
+
+use rug::float::{Round, Special};
+use rug::{Complete, Float, Rational};
+
+use crate::bound::cell::{Anchor, Cell};
+use crate::bound::patch::{NoPatch, Part, Patch, Remainder, Wish, patch};
+use crate::bound::plain::plain_bounds;
+use crate::bound::point::{Subject, precise_values_at, values_at};
+use crate::bound::unbounded::{Shared, around_zero};
+use crate::bound::zeros::exact_zero;
+use crate::function::exact::Centre;
+use crate::function::formula::{Formula, Operation};
+use crate::function::refusal::{Refusal, RefusalKind};
+
+/// One piece (or the part of it that a claim is about) and what is asked of it.
+#[derive(Clone, Debug)]
+pub struct Task<'a> {
+    /// What is compared, and how.
+    pub subject: Subject<'a>,
+    /// Upper bounds hold on all of this.
+    pub outer: [Rational; 2],
+    /// Arguments for lower bounds come from here; inside `outer`.
+    pub inner: [Rational; 2],
+    /// Whether each end belongs to the set (a piece that does not own its end may not use it).
+    pub owned: [bool; 2],
+    /// The bound that is claimed: refinement goes on past the tightness while it is undecided.
+    pub bound: Option<Rational>,
+    /// Wanted upper/lower - 1.
+    pub tightness: f64,
+    /// Units of work allowed.
+    pub budget: u64,
+}
+
+/// Why the upper end is not as tight as asked.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Unfinished {
+    /// The budget of work ran out.
+    Budget,
+    /// A function could not be shown to be defined, or continuous, near `at`.
+    Refused { at: Rational, refusal: Refusal, part: Part },
+    /// The reference vanishes near `at`, and the approximant is not proved to share the zero.
+    ZeroOfReference { at: Rational },
+    /// The most bits allowed do not resolve the error near `at`.
+    Precision { at: Rational },
+}
+
+/// The proved result for one piece.
+#[derive(Clone, Debug)]
+pub struct Supremum {
+    /// The modulus of the error reaches at least this (at `at`).
+    pub lower: Float,
+    /// The modulus of the error is at most this everywhere; may be infinite.
+    pub upper: Float,
+    /// Enclosure of the least signed error.
+    pub minimum: [Float; 2],
+    /// Enclosure of the greatest signed error.
+    pub maximum: [Float; 2],
+    /// An argument of the set where the lower end is reached, and the order of the zero that
+    /// both functions share there.
+    pub at: Option<(Centre, usize)>,
+    /// The relative error is proved to be unbounded (a zero of the reference that the
+    /// approximant does not share).
+    pub unbounded: bool,
+    /// Removable singularities and shared zeros that were taken by continuity.
+    pub by_continuity: Vec<Centre>,
+    /// Remainder of the patch with the largest error.
+    pub remainder: Option<Remainder>,
+    /// Patches that cover the piece, and cells bounded by plain interval extension.
+    pub cells: [u64; 2],
+    /// Set if `upper` is not as tight as asked.
+    pub unfinished: Option<Unfinished>,
+    /// Units of work done.
+    pub work: u64,
+}
+
+/// A formula that is proved to have no value at an argument of the domain.
+#[derive(Clone, Debug)]
+pub struct Undefined {
+    /// Where.
+    pub at: Rational,
+    /// Why.
+    pub refusal: Refusal,
+    /// Which function.
+    pub part: Part,
+}
+
+/// Bits of the reported enclosures.
+const RESULT_PRECISION: u32 = 64;
+
+/// Deepest bisection of a piece.
+const DEEPEST: u32 = 400;
+
+/// Depth from which a cell may be covered by its natural interval extension.
+const PLAIN_FROM: u32 = 2;
+
+/// Encloses the supremum for `task`, repeating with a smaller tolerance while the claimed bound
+/// lies inside the enclosure.
+pub fn supremum(task: &Task) -> Result<Supremum, Undefined> {
+    let mut tightness = task.tightness;
+    let mut result = Search::new(task, tightness, task.budget).run()?;
+    while let Some(bound) = &task.bound {
+        let open = result.lower <= *bound && result.upper > *bound;
+        let left = task.budget.saturating_sub(result.work);
+        if !open || result.unfinished.is_some() || tightness < 1e-11 || left == 0 {
+            break;
+        }
+        tightness /= 32.0;
+        let spent = result.work;
+        let mut sharper = Search::new(task, tightness, left).run()?;
+        sharper.work += spent;
+        let finished = sharper.unfinished.is_none();
+        // The sharper run replaces the first unless it ran out before it got anywhere.
+        if finished || sharper.upper <= result.upper {
+            result = sharper;
+        } else {
+            result.work = sharper.work;
+        }
+        if !finished {
+            break;
+        }
+    }
+    Ok(result)
+}
+
+/// The state of one pass.
+struct Search<'a> {
+    task: &'a Task<'a>,
+    queue: VecDeque<Cell>,
+    wish: Wish,
+    budget: u64,
+    result: Supremum,
+    maximum_at: Option<(Centre, usize)>,
+    minimum_at: Option<(Centre, usize)>,
+    seeded: bool,
+    largest: Float,
+}
+
+impl<'a> Search<'a> {
+    fn new(task: &'a Task<'a>, tightness: f64, budget: u64) -> Self {
+        let infinity = |special| Float::with_val(RESULT_PRECISION, special);
+        let (below, above) = (Special::NegInfinity, Special::Infinity);
+        let (floor, precision) = floor_and_precision(task);
+        Self {
+            task,
+            queue: VecDeque::from([Cell::whole(task.outer.clone())]),
+            wish: Wish {
+                known: Float::new(53),
+                tightness,
+                floor,
+                terms: 6,
+                precision,
+                budget: 200_000,
+            },
+            budget,
+            result: Supremum {
+                lower: Float::new(RESULT_PRECISION),
+                upper: Float::new(RESULT_PRECISION),
+                minimum: [infinity(above), infinity(above)],
+                maximum: [infinity(below), infinity(below)],
+                at: None,
+                unbounded: false,
+                by_continuity: Vec::new(),
+                remainder: None,
+                cells: [0, 0],
+                unfinished: None,
+                work: 0,
+            },
+            maximum_at: None,
+            minimum_at: None,
+            seeded: false,
+            largest: Float::new(53),
+        }
+    }
+
+    fn run(mut self) -> Result<Supremum, Undefined> {
+        while let Some(cell) = self.queue.pop_front() {
+            if self.result.work > self.budget {
+                self.give_up(&cell, Unfinished::Budget);
+                break;
+            }
+            self.result.work += 1;
+            let frame = cell.frame(&self.task.inner, self.task.owned);
+            match patch(&self.task.subject, &frame, &self.wish) {
+                Ok(found) => self.merge(&cell, &frame.centre, frame.shared_zero, &found),
+                Err(NoPatch::TooWide | NoPatch::Exhausted) => self.divide(cell, Unfinished::Budget),
+                Err(NoPatch::Unresolved) => {
+                    let at = cell.middle();
+                    self.divide(cell, Unfinished::Precision { at });
+                }
+                Err(NoPatch::ReferenceMayVanish(_)) => self.zero_of_reference(cell),
+                Err(NoPatch::Centre(refusal, part) | NoPatch::Disc(refusal, part)) => {
+                    self.refused(cell, refusal, part)?;
+                }
+            }
+        }
+        Ok(self.finish())
+    }
+
+    fn merge(&mut self, cell: &Cell, centre: &Centre, shared_zero: usize, found: &Patch) {
+        self.result.work += found.work;
+        self.result.cells[0] += 1;
+        if let Some(anchor) = &cell.anchor
+            && !self.result.by_continuity.contains(&anchor.centre)
+        {
+            self.result.by_continuity.push(anchor.centre.clone());
+        }
+        self.wish.terms = self.wish.terms.max(found.terms.saturating_sub(4));
+        self.wish.precision = self.wish.precision.max(found.precision);
+        let shift = i32::try_from(found.exponent).unwrap_or(0);
+        let scaled = |x: f64| Float::with_val(RESULT_PRECISION, x) << shift;
+        let extremes = &found.extremes;
+        let at = |t: f64| {
+            let place = cell.argument(centre, t);
+            (place, if t == 0.0 { shared_zero } else { 0 })
+        };
+        let (low, high) = (scaled(extremes.minimum.lower), scaled(extremes.maximum.upper));
+        let top = Float::with_val(53, high.clone().abs().max(&low.clone().abs()));
+        if self.result.remainder.is_none() || top > self.largest {
+            self.largest = top;
+            self.result.remainder = Some(found.remainder.clone());
+        }
+        self.cover(low, high);
+        self.reach(scaled(extremes.maximum.lower), || at(extremes.maximum.at), true);
+        self.reach(scaled(extremes.minimum.upper), || at(extremes.minimum.at), false);
+    }
+
+    /// Every signed error of some cell lies in [low, high].
+    fn cover(&mut self, low: Float, high: Float) {
+        if low < self.result.minimum[0] {
+            self.result.minimum[0] = low;
+        }
+        if high > self.result.maximum[1] {
+            self.result.maximum[1] = high;
+        }
+    }
+
+    /// The signed error is at least (`up`) or at most `value` at some argument of the set.
+    fn reach(&mut self, value: Float, at: impl Fn() -> (Centre, usize), up: bool) {
+        if up && value > self.result.maximum[0] {
+            self.result.maximum[0] = value;
+            self.maximum_at = Some(at());
+        } else if !up && value < self.result.minimum[1] {
+            self.result.minimum[1] = value;
+            self.minimum_at = Some(at());
+        }
+        let modulus = self.modulus_reached();
+        if modulus > self.wish.known {
+            self.wish.known = Float::with_val_round(53, &modulus, Round::Down).0;
+        }
+    }
+
+    fn modulus_reached(&self) -> Float {
+        let below = Float::with_val(RESULT_PRECISION, -&self.result.minimum[1]);
+        let largest = below.max(&self.result.maximum[0]);
+        if largest.is_sign_positive() && largest.is_finite() {
+            largest
+        } else {
+            Float::new(RESULT_PRECISION)
+        }
+    }
+
+    /// Cuts a cell in two, or gives it up where that cannot help any more.
+    fn divide(&mut self, cell: Cell, reason: Unfinished) {
+        if cell.depth >= DEEPEST {
+            self.give_up(&cell, reason);
+            return;
+        }
+        self.queue.extend(cell.parts());
+    }
+
+    fn give_up(&mut self, cell: &Cell, reason: Unfinished) {
+        let range = cell.range(256);
+        match plain_bounds(&self.task.subject, &range) {
+            Ok([low, high]) => self.cover(low, high),
+            Err(_) => self.cover(
+                Float::with_val(RESULT_PRECISION, Special::NegInfinity),
+                Float::with_val(RESULT_PRECISION, Special::Infinity),
+            ),
+        }
+        self.result.unfinished.get_or_insert(reason);
+        let rest: Vec<Cell> = self.queue.drain(..).collect();
+        for cell in rest {
+            self.cover_plainly(&cell);
+        }
+    }
+
+    fn cover_plainly(&mut self, cell: &Cell) {
+        let bounds = plain_bounds(&self.task.subject, &cell.range(256));
+        let [low, high] = bounds.unwrap_or_else(|_| {
+            [Special::NegInfinity, Special::Infinity].map(|x| Float::with_val(RESULT_PRECISION, x))
+        });
+        self.cover(low, high);
+    }
+
+    /// A series or a disc was refused: a removable singularity, a singularity to be approached by
+    /// a graded mesh, or an argument where the formula has no value.
+    fn refused(&mut self, cell: Cell, refusal: Refusal, part: Part) -> Result<(), Undefined> {
+        self.seed();
+        if refusal.proved && refusal.kind != RefusalKind::NotAnalytic && self.belongs(&cell) {
+            let at = cell.middle();
+            let exact = Centre::rational(at.clone());
+            if let Err(refusal) = values_at(&self.task.subject, &exact, 0, 256)
+                && refusal.proved
+            {
+                return Err(Undefined { at, refusal, part });
+            }
+        }
+        if refusal.kind == RefusalKind::DivisionByZero
+            && cell.anchor.is_none()
+            && let Some(formula) = self.formula_of(part)
+            && let Operation::Divide(_, denominator) = formula.operations()[refusal.node]
+            && let Some(zero) = exact_zero(formula, denominator, &cell.ends[0], &cell.ends[1])
+        {
+            self.queue.extend(cell.anchored(Anchor { centre: zero.centre, shared_zero: 0 }));
+            return Ok(());
+        }
+        if cell.depth >= PLAIN_FROM && self.settled_plainly(&cell) {
+            return Ok(());
+        }
+        let at = cell.middle();
+        self.divide(cell, Unfinished::Refused { at, refusal, part });
+        Ok(())
+    }
+
+    fn belongs(&self, cell: &Cell) -> bool {
+        let middle = cell.middle();
+        middle >= self.task.inner[0] && middle <= self.task.inner[1]
+    }
+
+    fn formula_of(&self, part: Part) -> Option<&'a Formula> {
+        match (part, self.task.subject.form) {
+            (Part::Reference, _) => Some(self.task.subject.reference),
+            (Part::Approximant, crate::approximant::piece::Form::Formula(formula)) => Some(formula),
+            (Part::Approximant, _) => None,
+        }
+    }
+
+    /// Covers the cell by its natural interval extension if that is already good enough.
+    fn settled_plainly(&mut self, cell: &Cell) -> bool {
+        self.result.work += 64;
+        let range = cell.range(self.wish.precision.max(128));
+        let Ok([low, high]) = plain_bounds(&self.task.subject, &range) else {
+            return false;
+        };
+        let known = Float::with_val(53, self.wish.known.clone().max(&self.wish.floor));
+        let allowance = known * (0.5 * self.wish.tightness);
+        let top = Float::with_val(RESULT_PRECISION, &self.result.maximum[0] + &allowance);
+        let bottom = Float::with_val(RESULT_PRECISION, &self.result.minimum[1] - &allowance);
+        let small = high <= self.wish.floor && -low.clone() <= self.wish.floor;
+        if (high <= top && low >= bottom) || small {
+            self.cover(low, high);
+            self.result.cells[1] += 1;
+            return true;
+        }
+        false
+    }
+
+    /// Evaluates the error at a few arguments, so that pruning works before the first patch.
+    fn seed(&mut self) {
+        if std::mem::replace(&mut self.seeded, true) {
+            return;
+        }
+        let [left, right] = &self.task.inner;
+        let mut places = Vec::new();
+        for (end, owned) in self.task.inner.iter().zip(self.task.owned) {
+            if owned {
+                places.push(end.clone());
+            }
+        }
+        let width = (right - left).complete();
+        for k in 1..8u32 {
+            places.push((left + &width * Rational::from((k, 8u32))).complete());
+        }
+        for place in places {
+            let exact = Centre::rational(place);
+            let Ok(values) =
+                precise_values_at(&self.task.subject, &exact, 0, self.wish.precision, &self.wish.floor)
+            else {
+                continue;
+            };
+            let down = Float::with_val_round(RESULT_PRECISION, values.error.lower(), Round::Down).0;
+            let up = Float::with_val_round(RESULT_PRECISION, values.error.upper(), Round::Up).0;
+            self.reach(down, || (exact.clone(), 0), true);
+            self.reach(up, || (exact.clone(), 0), false);
+        }
+    }
+
+    /// The reference may vanish in the cell (relative errors).
+    fn zero_of_reference(&mut self, cell: Cell) {
+        if cell.anchor.as_ref().is_some_and(|anchor| anchor.shared_zero > 0) {
+            self.divide(cell, Unfinished::Budget);
+            return;
+        }
+        match around_zero(self.task, &cell) {
+            Shared::Anchor(anchor) => self.queue.extend(cell.anchored(anchor)),
+            Shared::Unbounded { at, value } => {
+                self.result.unbounded = true;
+                let centre = Centre::rational(at);
+                let (up, down) = (value.clone(), -value);
+                self.reach(up, || (centre.clone(), 0), true);
+                self.cover(down, Float::with_val(RESULT_PRECISION, Special::Infinity));
+                self.queue.clear();
+            }
+            Shared::Unknown if cell.depth >= 60 => {
+                let at = cell.middle();
+                self.give_up(&cell, Unfinished::ZeroOfReference { at });
+            }
+            Shared::Unknown => {
+                let at = cell.middle();
+                self.divide(cell, Unfinished::ZeroOfReference { at });
+            }
+        }
+    }
+
+    /// Confirms the lower end by evaluating the error at the best argument.
+    fn finish(mut self) -> Supremum {
+        let result = &mut self.result;
+        let below = Float::with_val(RESULT_PRECISION, -&result.minimum[0]);
+        result.upper = below.max(&result.maximum[1]);
+        if result.unbounded {
+            result.upper = Float::with_val(RESULT_PRECISION, Special::Infinity);
+        }
+        let up = result.maximum[0] >= Float::with_val(RESULT_PRECISION, -&result.minimum[1]);
+        result.at = if up { self.maximum_at.take() } else { self.minimum_at.take() };
+        if let Some((at, zero)) = &result.at
+            && let Ok(values) =
+                precise_values_at(&self.task.subject, at, *zero, self.wish.precision, &self.wish.floor)
+        {
+            let error = &values.error;
+            let modulus = if error.is_positive() {
+                error.lower()
+            } else if error.is_negative() {
+                -error.upper()
+            } else {
+                Float::new(RESULT_PRECISION)
+            };
+            result.lower = Float::with_val_round(RESULT_PRECISION, modulus, Round::Down).0;
+        }
+        self.result
+    }
+}
+
+/// The absolute floor of the refinement and the bits to begin with.
+///
+/// With a claimed bound B, errors below B 2^-24 need no resolution. Without one the floor is
+/// 2^-1024 in the units of the measure, which p = f alone reaches.
+fn floor_and_precision(task: &Task) -> (Float, u32) {
+    match &task.bound {
+        Some(bound) if *bound > 0 => {
+            let bound = Float::with_val(53, bound);
+            let bits = bound.get_exp().map_or(0, |exponent| -exponent).clamp(0, 4096);
+            let precision = (bits.unsigned_abs() + 64).max(96).next_multiple_of(32);
+            (bound >> 24, precision)
+        }
+        _ => (Float::with_val(53, 1) >> 1024, 128),
+    }
+}

@@ -1,0 +1,5 @@
+//! The certificate: its data model and its canonical bytes.
+
+pub mod build;
+pub mod canonical;
+pub mod model;
