@@ -10,12 +10,14 @@
 use std::cmp::Ordering;
 use std::f64::consts::PI;
 
-use rug::Rational;
+use rug::float::Round;
+use rug::{Float, Rational};
 
 use crate::function::exact::taylor::{Known, Taylor};
 use crate::function::formula::{Formula, Function, NodeId, Operation};
 use crate::function::series;
 use crate::number::ball::Ball;
+use crate::number::wide_interval::WideInterval;
 
 mod taylor;
 mod values;
@@ -41,6 +43,21 @@ impl Centre {
     /// The point in a ball.
     pub fn ball(&self, precision: u32) -> Ball {
         ball_of(&self.rational, &self.pi_multiple, precision)
+    }
+
+    /// The point between two numbers, the nearest ones of the precision unless a + b pi is smaller
+    /// than its parts by more than a factor of 2^64.
+    pub fn wide_interval(&self, precision: u32) -> WideInterval {
+        if self.pi_multiple.is_zero() {
+            return WideInterval::from_rational(&self.rational, precision);
+        }
+        let bits = precision.saturating_add(64);
+        let pi_part =
+            WideInterval::from_rational(&self.pi_multiple, bits).mul(&WideInterval::pi(bits));
+        let sum = pi_part.add(&WideInterval::from_rational(&self.rational, bits));
+        let (lower, _) = Float::with_val_round(precision, sum.lower(), Round::Down);
+        let (upper, _) = Float::with_val_round(precision, sum.upper(), Round::Up);
+        WideInterval::new(lower, upper)
     }
 
     /// A double near the point, to steer a search with.

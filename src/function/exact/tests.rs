@@ -4,6 +4,7 @@ use rug::Rational;
 use super::*;
 use crate::function::parser::parse_formula;
 use crate::number::literal;
+use crate::number::radius::Radius;
 
 fn rational(text: &str) -> Rational {
     literal::parse(text).unwrap_or_else(|error| panic!("{text}: {error:?}"))
@@ -150,7 +151,7 @@ fn no_coefficients_are_asked_for() {
 }
 
 #[test]
-fn a_ball_of_a_centre_contains_it() {
+fn a_centre_is_enclosed() {
     let centre = Centre {
         rational: rational("22/7"),
         pi_multiple: Rational::from(-1),
@@ -158,6 +159,15 @@ fn a_ball_of_a_centre_contains_it() {
     let ball = centre.ball(100);
     assert!(ball.is_positive() && (ball.midpoint().to_f64() - 1.2644892673496187e-3).abs() < 1e-17);
     assert!(ball.overlaps(&centre.ball(1000)) && ball.radius().to_f64_upper() < 1e-32);
+    let interval = centre.wide_interval(100);
+    let width = interval.upper().clone() - interval.lower();
+    assert!(*interval.lower() >= ball.lower() && *interval.upper() <= ball.upper());
+    assert!(width > 0 && width <= Radius::power_of_two(-109).to_float_upper(10));
+    assert!(
+        Centre::rational(rational("3/8"))
+            .wide_interval(53)
+            .is_exact()
+    );
     assert!((centre.to_f64() - 1.2644892673496187e-3).abs() < 1e-15);
     assert!(Centre::rational(rational("3/8")).ball(53).is_exact());
 }
