@@ -5,7 +5,7 @@
 //! are numbers a + b pi with rational a and b, or unknown: enough for the points at which the
 //! zeros of real formulas lie (sin(x) at a multiple of pi, log1p(x) at 0, exp(x) - 1 at 0), and
 //! nothing is ever rounded. The two directions meet in [`leading_coefficients`]: what is zero is
-//! proved here, what is not zero is proved by the balls of [`series`](crate::function::series).
+//! proved here, what is not zero is proved by the balls of a [power series](crate::function::series).
 
 use std::cmp::Ordering;
 use std::f64::consts::PI;

@@ -9,7 +9,7 @@ use crate::function::series::power_series::{Arithmetic, PowerSeries};
 use crate::number::ball::Ball;
 
 /// The cost of a value of an elementary function in ball multiplications, roughly.
-pub(super) const ELEMENTARY_WORK: u64 = 20;
+const ELEMENTARY_WORK: u64 = 20;
 
 /// Why a function has no power series at the centre.
 #[derive(Clone, Copy, Debug)]

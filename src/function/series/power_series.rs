@@ -3,10 +3,14 @@
 //! A series is in powers of t; ' is the derivative with respect to t. Each elementary function y of
 //! a series u satisfies a differential equation of first order in which the coefficient of t^(k-1)
 //! determines y_k from y_0, ..., y_{k-1}; with s_j = j u_j = (t u')_j the sums below follow. The
-//! constant term y_0 comes from the function of a ball. All operations cost O(n^2) or, for a
-//! polynomial u of degree d, O(d n) multiplications. Sources (from memory): Knuth, The Art of
+//! constant term y_0 comes from the function of a ball. All operations cost O(n^2) or, where u is a
+//! polynomial of degree d, mostly O(d n) multiplications. Sources (from memory): Knuth, The Art of
 //! Computer Programming, vol. 2, section 4.7 (division, Miller's recurrence for powers); Brent and
 //! Kung, Fast algorithms for manipulating formal power series, J. ACM 25 (1978), 581-595.
+//!
+//! The radii follow the recurrences with absolute values: they are about 2^-precision times the
+//! coefficients of a majorant, for u/v of 1/(|v_0| - |v_1| t - |v_2| t^2 - ...), which may grow
+//! faster than the true coefficients by a few bits a term.
 
 use crate::number::ball::Ball;
 
@@ -201,11 +205,11 @@ impl Arithmetic {
     /// sum v_j v_{k-j} over first <= j <= k - first; the products of a pair are taken once.
     fn square_term(&mut self, v: &[Ball], k: usize, first: usize) -> Ball {
         let mut total = self.zero();
-        if k >= first + 1 {
+        if k > first {
             self.accumulate(&mut total, v, v, k, (first, (k - 1) / 2));
         }
         total = total.mul_power_of_two(1);
-        if k % 2 == 0
+        if k.is_multiple_of(2)
             && k / 2 >= first
             && let Some(middle) = v.get(k / 2)
             && !middle.is_exact_zero()
