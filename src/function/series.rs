@@ -1,117 +1,372 @@
-//! temporary
-use rug::{Float, Rational};
-use crate::function::exact::{Centre, Exact, leading_coefficients};
-use crate::function::formula::{Formula, Function, Operation};
+//! The reference function as a truncated power series in balls.
+//!
+//! Every operation of the formula becomes a power series in t, x = centre + scale t, by the
+//! recurrences of the module `power_series`. A quotient whose denominator vanishes at the centre is
+//! continued there if the zeros of numerator and denominator are proved by exact arithmetic
+//! ([exact coefficients](crate::function::exact)): with d(t) = t^k D(t), D(0) != 0 and n(t) = t^k N(t) the
+//! continuation is N/D. Such a quotient is k terms shorter than its operands, so the whole formula
+//! is evaluated again with the missing terms.
+
+use std::cmp::Ordering;
+use std::collections::HashMap;
+
+use rug::Float;
+
+use crate::function::exact::{self, Centre, Exact, ExactCoefficients};
+use crate::function::formula::{Formula, Function, NodeId, Operation};
 use crate::function::refusal::{Refusal, RefusalKind};
+use crate::function::series::elementary::Obstacle;
+use crate::function::series::power_series::{Arithmetic, PowerSeries};
 use crate::number::ball::Ball;
 
-type S = Vec<Ball>;
-fn z(p: u32) -> Ball { Ball::zero(p) }
-fn mul(a: &S, b: &S, p: u32) -> S {
-    let n = a.len().min(b.len());
-    (0..n).map(|k| { let mut s = z(p); for j in 0..=k { if !a[j].is_exact_zero() && !b[k-j].is_exact_zero() { s.add_product(&a[j], &b[k-j]); } } s }).collect()
-}
-fn div(a: &S, b: &S, p: u32) -> Option<S> {
-    let n = a.len().min(b.len());
-    let mut q: S = vec![];
-    for k in 0..n { let mut s = a[k].clone(); for j in 1..=k { if !b[j].is_exact_zero() { s = s.sub(&b[j].mul(&q[k-j])); } } q.push(s.div(&b[0])?); let _ = p; }
-    Some(q)
-}
-fn deriv(a: &S) -> S { (1..a.len()).map(|k| a[k].mul_integer(k as i64)).collect() }
-fn integ(d: &S, v: Ball, n: usize) -> S { let mut r = vec![v]; for k in 1..n { r.push(d[k-1].div_integer(k as u64)); } r }
-fn exp(u: &S, v: Ball, p: u32) -> S {
-    let d = deriv(u); let mut y = vec![v];
-    for k in 1..u.len() { let mut s = z(p); for j in 0..k { s.add_product(&d[j], &y[k-1-j]); } y.push(s.div_integer(k as u64)); } y
-}
-fn rot(u: &S, s0: Ball, c0: Ball, circ: bool, p: u32) -> (S, S) {
-    let d = deriv(u); let (mut s, mut c) = (vec![s0], vec![c0]);
-    for k in 1..u.len() { let (mut a, mut b) = (z(p), z(p)); for j in 0..k { a.add_product(&d[j], &c[k-1-j]); b.add_product(&d[j], &s[k-1-j]); }
-        s.push(a.div_integer(k as u64)); let b = b.div_integer(k as u64); c.push(if circ { b.neg() } else { b }); } (s, c)
-}
-fn powr(u: &S, q: &Rational, v: Ball, p: u32) -> Option<S> {
-    let mut y = vec![v];
-    for k in 1..u.len() { let mut s = z(p);
-        for j in 1..=k { if u[j].is_exact_zero() { continue; } let w = Rational::from(q * Rational::from(j)) - Rational::from(k - j); s.add_product(&Ball::from_rational(&w, p).mul(&u[j]), &y[k-j]); }
-        y.push(s.div_integer(k as u64).div(&u[0])?); }
-    Some(y)
-}
-fn log(u: &S, v: Ball, p: u32) -> Option<S> { let n = u.len(); if n == 1 { return Some(vec![v]); } let t: S = u[..n-1].to_vec(); let d = div(&deriv(u), &t, p)?; Some(integ(&d, v, n)) }
+mod elementary;
+mod power_series;
 
-pub fn series(formula: &Formula, centre: &Centre, scale: &Float, terms: usize, precision: u32) -> Result<Vec<Ball>, Refusal> {
+/// How many leading coefficients are known exactly for a quotient 0/0. A zero of this order or a
+/// higher one is refused, and so are nested singularities whose orders add up to as much.
+const EXACT_COUNT: usize = 8;
+
+/// How many terms more than asked for are carried to make up for removable singularities, each of
+/// which costs the order of its zero. A formula that nests so many that it needs more is refused.
+const EXTRA_MAX: usize = 64;
+
+/// The precision at which [`exact_coefficients`] proves coefficients to be different from zero.
+const SIGN_PRECISION: u32 = 128;
+
+/// The coefficients f^(k)(c) scale^k / k! for k < `terms` in balls, c the centre and `scale` > 0 an
+/// exact number.
+///
+/// A success with more than one term proves f analytic at the centre (after continuation through
+/// removable singularities). With one term it is an evaluation at a point, which also works where
+/// only the value exists, such as sqrt(0) and asin(1).
+///
+/// `precision` is that of the arithmetic. On |t| <= 1 a few bits of it are lost; a coefficient that is
+/// much smaller than the largest one may lose, relative to itself, up to about three bits times its
+/// index in compound formulas.
+///
+/// # Errors
+///
+/// A [`Refusal`] names the operation that is not analytic at the centre, or not proved to be. It is
+/// `proved` only if the formula is proved to be undefined at the centre.
+pub fn series(
+    formula: &Formula,
+    centre: &Centre,
+    scale: &Float,
+    terms: usize,
+    precision: u32,
+) -> Result<Vec<Ball>, Refusal> {
+    series_with_work(
+        formula,
+        centre,
+        scale,
+        terms,
+        precision,
+        &mut SeriesWork::default(),
+    )
+}
+
+/// The work of an evaluation in units that do not depend on the machine.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub struct SeriesWork {
+    /// The number of ball multiplications; a value of an elementary function counts as
+    /// 20 of them.
+    pub multiplications: u64,
+}
+
+/// [`series`], adding the work it took to `work`.
+///
+/// # Errors
+///
+/// As [`series`].
+pub fn series_with_work(
+    formula: &Formula,
+    centre: &Centre,
+    scale: &Float,
+    terms: usize,
+    precision: u32,
+    work: &mut SeriesWork,
+) -> Result<Vec<Ball>, Refusal> {
+    let operations = formula.operations();
     let mut extra = 0;
+    // Exact zeros are worth their price from the start where the centre suggests them.
+    let mut exact = !centre.pi_multiple.is_zero();
     loop {
-        let r = run(formula, centre, scale, terms + extra, precision)?;
-        if r.len() >= terms { let mut r = r; r.truncate(terms); return Ok(r); }
-        extra += terms - r.len();
-        if extra > 64 { return Err(Refusal { node: formula.root(), kind: RefusalKind::DivisionByZero, proved: false }); }
+        let mut evaluation = Evaluation::new(
+            operations,
+            centre,
+            scale,
+            terms.saturating_add(extra),
+            precision,
+        );
+        if exact {
+            evaluation.exact = Some(ExactCoefficients::new(operations, centre, EXACT_COUNT));
+        }
+        let outcome = evaluation.run();
+        work.multiplications = work
+            .multiplications
+            .saturating_add(evaluation.arithmetic.work);
+        let short = match outcome {
+            Ok(()) => {
+                let root = evaluation.nodes.swap_remove(formula.root());
+                if root.known() >= terms {
+                    return Ok(root.into_coefficients(terms, precision));
+                }
+                extra += terms - root.known();
+                formula.root()
+            }
+            Err(Stop::Refused(refusal)) => return Err(refusal),
+            Err(Stop::TooFewTerms(node)) => {
+                extra += extra.max(EXACT_COUNT);
+                node
+            }
+        };
+        if extra > EXTRA_MAX {
+            let kind = RefusalKind::DivisionByZero;
+            return Err(Refusal {
+                node: short,
+                kind,
+                proved: false,
+            });
+        }
+        exact = true;
     }
 }
-fn run(formula: &Formula, centre: &Centre, scale: &Float, n: usize, p: u32) -> Result<Vec<Ball>, Refusal> {
-    let mut v: Vec<S> = vec![];
-    let mut lead: Option<Vec<Vec<Option<Exact>>>> = None;
-    for (node, op) in formula.operations().iter().enumerate() {
-        let no = |kind| Refusal { node, kind, proved: false };
-        let konst = |b: Ball| { let mut s = vec![z(p); n]; s[0] = b; s };
-        let r: S = match op {
-            Operation::Variable => { let mut s = konst(centre.ball(p)); if n > 1 { s[1] = Ball::from_float(scale.clone()).with_precision(p); } s }
-            Operation::Rational(x) => konst(Ball::from_rational(x, p)),
-            Operation::Pi => konst(Ball::pi(p)),
-            Operation::Negate(a) => v[*a].iter().map(Ball::neg).collect(),
-            Operation::Add(a, b) => v[*a].iter().zip(&v[*b]).map(|(x, y)| x.add(y)).collect(),
-            Operation::Subtract(a, b) => v[*a].iter().zip(&v[*b]).map(|(x, y)| x.sub(y)).collect(),
-            Operation::Multiply(a, b) => mul(&v[*a], &v[*b], p),
-            Operation::Divide(a, b) => {
-                if v[*b][0].contains_zero() {
-                    let l = lead.get_or_insert_with(|| leading_coefficients(formula, centre, 8));
-                    let cnt = |k: usize| l[k].iter().take_while(|c| c.as_ref().is_some_and(|e| e.is_zero())).count();
-                    let k = cnt(*b);
-                    if k == 0 || cnt(*a) < k || v[*a].len() <= k || v[*b].len() <= k { if k > 0 && cnt(*a) >= k { vec![] } else { return Err(Refusal { node, kind: RefusalKind::DivisionByZero, proved: k > 0 && n > k && !v[*a][0].contains_zero() }); } }
-                    else { div(&v[*a][k..].to_vec(), &v[*b][k..].to_vec(), p).ok_or(no(RefusalKind::DivisionByZero))? }
-                } else { div(&v[*a], &v[*b], p).ok_or(no(RefusalKind::DivisionByZero))? }
+
+/// The first `count` exactly known coefficients of the operations before the first one that is not
+/// proved analytic at the centre.
+pub(crate) fn exact_coefficients(
+    operations: &[Operation],
+    centre: &Centre,
+    count: usize,
+) -> Vec<Vec<Option<Exact>>> {
+    let scale = Float::with_val(2, 1);
+    let mut extra = EXACT_COUNT;
+    loop {
+        // Two terms at least, because a value alone does not prove analyticity.
+        let terms = count.max(2).saturating_add(extra);
+        let mut evaluation = Evaluation::new(operations, centre, &scale, terms, SIGN_PRECISION);
+        evaluation.exact = Some(ExactCoefficients::new(operations, centre, terms));
+        let outcome = evaluation.run();
+        extra *= 2;
+        if matches!(outcome, Err(Stop::TooFewTerms(_))) && extra <= EXTRA_MAX {
+            continue;
+        }
+        let mut nodes = evaluation
+            .exact
+            .map(ExactCoefficients::into_nodes)
+            .unwrap_or_default();
+        nodes
+            .iter_mut()
+            .for_each(|coefficients| coefficients.truncate(count));
+        return nodes;
+    }
+}
+
+/// Why an evaluation ended before the last operation.
+enum Stop {
+    Refused(Refusal),
+    /// A removable singularity at this operation leaves no term.
+    TooFewTerms(NodeId),
+}
+
+/// One pass over the operations with a fixed number of terms.
+struct Evaluation<'a> {
+    operations: &'a [Operation],
+    centre: &'a Centre,
+    scale: &'a Float,
+    arithmetic: Arithmetic,
+    nodes: Vec<PowerSeries>,
+    /// Results that came with another: the cosine with the sine and the like.
+    companions: HashMap<(Function, NodeId), PowerSeries>,
+    exact: Option<ExactCoefficients<'a>>,
+}
+
+impl<'a> Evaluation<'a> {
+    fn new(
+        operations: &'a [Operation],
+        centre: &'a Centre,
+        scale: &'a Float,
+        terms: usize,
+        precision: u32,
+    ) -> Self {
+        Evaluation {
+            operations,
+            centre,
+            scale,
+            arithmetic: Arithmetic {
+                precision,
+                terms: terms.max(1),
+                work: 0,
+            },
+            nodes: Vec::with_capacity(operations.len()),
+            companions: HashMap::new(),
+            exact: None,
+        }
+    }
+
+    fn run(&mut self) -> Result<(), Stop> {
+        for node in 0..self.operations.len() {
+            let mut result = self.operation(node)?;
+            if !result.is_finite() {
+                return Err(refused(node, Obstacle::unproved(RefusalKind::Unbounded)));
             }
-            Operation::PowerInteger(a, e) => {
-                let mut r = konst(Ball::one(p)); r.truncate(v[*a].len()); let mut m = e.unsigned_abs(); let mut s = v[*a].clone();
-                while m > 0 { if m & 1 == 1 { r = mul(&r, &s, p); } m >>= 1; if m > 0 { s = mul(&s, &s, p); } }
-                if *e < 0 { let one = konst(Ball::one(p)); div(&one, &r, p).ok_or(no(RefusalKind::DivisionByZero))? } else { r }
+            if self.exact.is_some() {
+                self.nodes.push(result);
+                self.extend_exact(node + 1);
+                result = self.nodes.remove(node);
+                self.set_exact_zeros(node, &mut result);
             }
-            Operation::PowerRational(a, q) => { let u = &v[*a]; let v0 = u[0].pow_rational(q).ok_or(Refusal { node, kind: RefusalKind::OutsideDomain, proved: u[0].is_negative() })?; powr(u, q, v0, p).ok_or(no(RefusalKind::NotAnalytic))? }
-            Operation::Power(a, b) => { let u = &v[*a]; let l = log(u, u[0].log().ok_or(Refusal { node, kind: RefusalKind::OutsideDomain, proved: u[0].is_negative() })?, p).ok_or(no(RefusalKind::NotAnalytic))?; let w = mul(&l, &v[*b], p); let e0 = w[0].exp(); exp(&w, e0, p) }
-            Operation::Apply(f, a) => {
-                let u = v[*a].clone(); if u.is_empty() { v.push(u); continue; }
-                let u0 = u[0].clone();
-                let one = { let mut o = konst(Ball::one(p)); o.truncate(u.len()); o };
-                let addn = |x: &S, y: &S| -> S { x.iter().zip(y).map(|(a, b)| a.add(b)).collect() };
-                let subn = |x: &S, y: &S| -> S { x.iter().zip(y).map(|(a, b)| a.sub(b)).collect() };
-                let out = || Refusal { node, kind: RefusalKind::OutsideDomain, proved: match f { Function::Log | Function::Log2 | Function::Log10 => u0.is_negative() || u0.is_exact_zero(), Function::Sqrt => u0.is_negative(), Function::Asin | Function::Acos => u0.lower() > 1 || u0.upper() < -1, Function::Acosh => u0.upper() < 1, Function::Log1p => u0.upper() <= -1, Function::Atanh => u0.lower() >= 1 || u0.upper() <= -1, _ => false } };
-                let half = |s: i32| Rational::from((s, 2));
-                let chain = |d: Option<S>, v0: Ball| -> Result<S, Refusal> { if u.len() == 1 { return Ok(vec![v0]); } let d = d.ok_or(no(RefusalKind::NotAnalytic))?; Ok(integ(&mul(&deriv(&u), &d, p), v0, u.len())) };
-                let ipow = |x: &S, q: Rational| -> Option<S> { if x.len() == 1 { return Some(x.clone()); } let x0 = x[0].pow_rational(&q)?; powr(x, &q, x0, p) };
-                match f {
-                    Function::Exp => exp(&u, u0.exp(), p),
-                    Function::Expm1 => { let mut r = exp(&u, u0.exp(), p); r[0] = u0.expm1(); r }
-                    Function::Exp2 => { let l2 = Ball::from_i64(2, p).log().ok_or_else(out)?; let w: S = u.iter().map(|x| x.mul(&l2)).collect(); exp(&w, u0.exp2(), p) }
-                    Function::Log => log(&u, u0.log().ok_or_else(out)?, p).ok_or(no(RefusalKind::NotAnalytic))?,
-                    Function::Log2 | Function::Log10 => { let b = if *f == Function::Log2 { 2 } else { 10 }; let l = Ball::from_i64(b, p).log().ok_or_else(out)?; let v0 = if b == 2 { u0.log2() } else { u0.log10() }.ok_or_else(out)?; let r = log(&u, v0.clone(), p).ok_or(no(RefusalKind::NotAnalytic))?; let mut r: S = r.iter().map(|x| x.div(&l).unwrap_or_else(|| Ball::whole(p))).collect(); r[0] = v0; r }
-                    Function::Log1p => log(&addn(&u, &one), u0.log1p().ok_or_else(out)?, p).ok_or(no(RefusalKind::NotAnalytic))?,
-                    Function::Sin | Function::Cos => { let (s, c) = u0.sin_cos(); let (s, c) = rot(&u, s, c, true, p); if *f == Function::Sin { s } else { c } }
-                    Function::Sinh | Function::Cosh => { let (s, c) = rot(&u, u0.sinh(), u0.cosh(), false, p); if *f == Function::Sinh { s } else { c } }
-                    Function::Tan => { let (s, c) = u0.sin_cos(); let (s, c) = rot(&u, s, c, true, p); div(&s, &c, p).ok_or(no(RefusalKind::DivisionByZero))? }
-                    Function::Tanh => { let (s, c) = rot(&u, u0.sinh(), u0.cosh(), false, p); div(&s, &c, p).ok_or(no(RefusalKind::DivisionByZero))? }
-                    Function::Sqrt => { let v0 = u0.sqrt().ok_or_else(out)?; if u.len() == 1 { vec![v0] } else { powr(&u, &half(1), v0, p).ok_or(no(RefusalKind::NotAnalytic))? } }
-                    Function::Cbrt => { if u.len() == 1 { vec![u0.cbrt()] } else { powr(&u, &Rational::from((1, 3)), u0.cbrt(), p).ok_or(no(RefusalKind::NotAnalytic))? } }
-                    Function::Asin => chain(ipow(&subn(&one, &mul(&u, &u, p)), half(-1)), u0.asin().ok_or_else(out)?)?,
-                    Function::Acos => { let r = chain(ipow(&subn(&one, &mul(&u, &u, p)), half(-1)), u0.acos().ok_or_else(out)?)?; r.iter().enumerate().map(|(k, b)| if k == 0 { b.clone() } else { b.neg() }).collect() }
-                    Function::Atan => chain(div(&one, &addn(&one, &mul(&u, &u, p)), p), u0.atan())?,
-                    Function::Asinh => chain(ipow(&addn(&one, &mul(&u, &u, p)), half(-1)), u0.asinh())?,
-                    Function::Acosh => chain(ipow(&subn(&mul(&u, &u, p), &one), half(-1)), u0.acosh().ok_or_else(out)?)?,
-                    Function::Atanh => chain(div(&one, &subn(&one, &mul(&u, &u, p)), p), u0.atanh().ok_or_else(out)?)?,
-                    Function::Erf | Function::Erfc => { let w: S = mul(&u, &u, p).iter().map(Ball::neg).collect(); let e0 = w[0].exp(); let g = exp(&w, e0, p); let c = Ball::from_i64(2, p).div(&Ball::pi(p).sqrt().ok_or_else(out)?).ok_or_else(out)?; let g: S = g.iter().map(|x| x.mul(&c)).collect();
-                        if *f == Function::Erf { chain(Some(g), u0.erf())? } else { let g: S = g.iter().map(Ball::neg).collect(); chain(Some(g), u0.erfc())? } }
-                    Function::Fabs => { if u0.is_positive() { u } else if u0.is_negative() { u.iter().map(Ball::neg).collect() } else if u.len() == 1 { vec![u0.abs()] } else { return Err(no(RefusalKind::NotAnalytic)); } }
+            self.nodes.push(result);
+        }
+        Ok(())
+    }
+
+    /// Computes the exact coefficients of the operations before `end`, which are all evaluated.
+    fn extend_exact(&mut self, end: NodeId) {
+        let nodes = &self.nodes;
+        let sign = |node: NodeId, k: usize| {
+            let coefficient = nodes.get(node)?.coefficients().get(k)?;
+            if coefficient.is_positive() {
+                Some(Ordering::Greater)
+            } else if coefficient.is_negative() {
+                Some(Ordering::Less)
+            } else {
+                None
+            }
+        };
+        self.exact
+            .get_or_insert_with(|| {
+                ExactCoefficients::new(self.operations, self.centre, EXACT_COUNT)
+            })
+            .extend_to(end, &sign);
+    }
+
+    /// With one term nothing is proved about derivatives, so that only the value may be replaced:
+    /// the rules for it use values alone.
+    fn set_exact_zeros(&self, node: NodeId, result: &mut PowerSeries) {
+        let Some(exact) = &self.exact else { return };
+        for (k, known) in exact
+            .node(node)
+            .iter()
+            .enumerate()
+            .take(self.arithmetic.terms)
+        {
+            if matches!(known, Some(value) if value.is_zero()) {
+                result.set_zero(k);
+            }
+        }
+    }
+
+    fn operation(&mut self, node: NodeId) -> Result<PowerSeries, Stop> {
+        let precision = self.arithmetic.precision;
+        let result = match &self.operations[node] {
+            Operation::Variable => self.variable(),
+            Operation::Rational(value) => {
+                PowerSeries::constant(Ball::from_rational(value, precision))
+            }
+            Operation::Pi => PowerSeries::constant(Ball::pi(precision)),
+            Operation::Negate(operand) => self.arithmetic.negate(&self.nodes[*operand]),
+            Operation::Add(left, right) => {
+                self.arithmetic.add(&self.nodes[*left], &self.nodes[*right])
+            }
+            Operation::Subtract(left, right) => self
+                .arithmetic
+                .subtract(&self.nodes[*left], &self.nodes[*right]),
+            Operation::Multiply(left, right) if left == right => {
+                self.arithmetic.square(&self.nodes[*left])
+            }
+            Operation::Multiply(left, right) => self
+                .arithmetic
+                .product(&self.nodes[*left], &self.nodes[*right]),
+            Operation::Divide(left, right) => return self.divide(node, *left, *right),
+            Operation::PowerInteger(base, exponent) if *exponent >= 0 => self
+                .arithmetic
+                .power_integer(&self.nodes[*base], exponent.unsigned_abs()),
+            Operation::PowerInteger(base, exponent) => self
+                .arithmetic
+                .power_negative(&self.nodes[*base], *exponent)
+                .map_err(|obstacle| refused(node, obstacle))?,
+            Operation::PowerRational(base, exponent) => self
+                .arithmetic
+                .power_rational(&self.nodes[*base], exponent)
+                .map_err(|obstacle| refused(node, obstacle))?,
+            Operation::Power(base, exponent) => self
+                .arithmetic
+                .power_of_series(&self.nodes[*base], &self.nodes[*exponent])
+                .map_err(|obstacle| refused(node, obstacle))?,
+            Operation::Apply(function, operand) => {
+                if let Some(result) = self.companions.remove(&(*function, *operand)) {
+                    result
+                } else {
+                    let (result, companion) = self
+                        .arithmetic
+                        .apply(*function, &self.nodes[*operand])
+                        .map_err(|obstacle| refused(node, obstacle))?;
+                    if let Some((other, series)) = companion {
+                        self.companions.insert((other, *operand), series);
+                    }
+                    result
                 }
             }
         };
-        v.push(r);
+        Ok(result)
     }
-    Ok(v.swap_remove(formula.root()))
+
+    fn variable(&self) -> PowerSeries {
+        let precision = self.arithmetic.precision;
+        let scale = Ball::from_float(self.scale.clone()).with_precision(precision);
+        PowerSeries::line(self.centre.ball(precision), scale)
+    }
+
+    /// A quotient, also through a removable singularity.
+    fn divide(&mut self, node: NodeId, left: NodeId, right: NodeId) -> Result<PowerSeries, Stop> {
+        let precision = self.arithmetic.precision;
+        let pole = |proved| refused(node, Obstacle::new(RefusalKind::DivisionByZero, proved));
+        let denominator = &self.nodes[right];
+        if denominator.is_zero() {
+            return Err(pole(true));
+        }
+        if let Some(quotient) = self.arithmetic.quotient(&self.nodes[left], denominator) {
+            return Ok(quotient);
+        }
+        if self.arithmetic.terms == 1 {
+            return Err(Stop::TooFewTerms(node));
+        }
+        self.extend_exact(node);
+        let Some(exact) = &self.exact else {
+            return Err(pole(false));
+        };
+        let zeros = exact::leading_zeros(exact.node(right));
+        let (numerator, denominator) = (&self.nodes[left], &self.nodes[right]);
+        let shared = exact::leading_zeros(exact.node(left)).min(zeros);
+        if shared < zeros && shared < numerator.known() {
+            // The numerator has a zero of lower order: a pole, if that is proved.
+            let lowest = numerator.coefficient(shared, precision);
+            return Err(pole(!lowest.contains_zero()));
+        }
+        if zeros == 0 || zeros == exact.node(right).len() {
+            return Err(pole(false));
+        }
+        if zeros >= numerator.known().min(denominator.known()) {
+            return Err(Stop::TooFewTerms(node));
+        }
+        let (numerator, denominator) = (
+            numerator.without_leading(zeros),
+            denominator.without_leading(zeros),
+        );
+        self.arithmetic
+            .quotient(&numerator, &denominator)
+            .ok_or_else(|| pole(false))
+    }
 }
+
+fn refused(node: NodeId, obstacle: Obstacle) -> Stop {
+    Stop::Refused(Refusal {
+        node,
+        kind: obstacle.kind,
+        proved: obstacle.proved,
+    })
+}
+
+#[cfg(test)]
+mod tests;
