@@ -3,6 +3,7 @@
 mod arithmetic;
 mod extremes;
 mod functions;
+mod powers;
 
 use proptest::prelude::*;
 use rug::Integer;
