@@ -13,7 +13,12 @@ use crate::number::ball::Ball;
 /// beta = h/s; the shift by alpha is Horner's repeated synthetic division (Knuth, TAOCP vol. 2,
 /// 4.6.4), n(n-1)/2 ball operations, followed by the scaling by beta^k. Cancellation in the shift
 /// shows as a larger radius, never as a wrong value.
-pub fn shifted(polynomial: &Polynomial, centre: &Centre, scale: &Float, precision: u32) -> Vec<Ball> {
+pub fn shifted(
+    polynomial: &Polynomial,
+    centre: &Centre,
+    scale: &Float,
+    precision: u32,
+) -> Vec<Ball> {
     let (alpha, beta) = local_variable(polynomial, centre, scale, precision);
     let mut coefficients: Vec<Ball> = polynomial
         .coefficients
@@ -66,14 +71,21 @@ fn local_variable(
     ) {
         let alpha = (&centre.rational - origin).complete() / width;
         let beta = step / width;
-        return (Ball::from_rational(&alpha, precision), Ball::from_rational(&beta, precision));
+        return (
+            Ball::from_rational(&alpha, precision),
+            Ball::from_rational(&beta, precision),
+        );
     }
     let enclosed = |constant: &Constant| {
-        constant.ball(precision).unwrap_or_else(|| Ball::whole(precision))
+        constant
+            .ball(precision)
+            .unwrap_or_else(|| Ball::whole(precision))
     };
     let width = enclosed(&polynomial.scale);
     let quotient = |numerator: &Ball| {
-        numerator.div(&width).unwrap_or_else(|| Ball::whole(precision))
+        numerator
+            .div(&width)
+            .unwrap_or_else(|| Ball::whole(precision))
     };
     let alpha = quotient(&centre.ball(precision).sub(&enclosed(&polynomial.origin)));
     let beta = quotient(&Ball::from_rational(&step, precision));

@@ -72,7 +72,10 @@ impl ErrorMeasure {
         match self {
             Self::Absolute => Measure::Absolute,
             Self::Relative => Measure::Relative,
-            Self::Mixed { absolute_part, relative_part } => Measure::Mixed {
+            Self::Mixed {
+                absolute_part,
+                relative_part,
+            } => Measure::Mixed {
                 absolute: absolute_part.clone(),
                 relative: relative_part.clone(),
             },

@@ -10,14 +10,20 @@
 //! hull of the arcs' enclosures and their conjugates. The operations are proved analytic in
 //! order, each from the hull of its operands:
 //!
-//! - a logarithm, root or real power needs a hull off (-inf, 0]; the inverse functions, off their
-//!   cuts; fabs, a hull on one side of the imaginary axis;
-//! - a quotient u/v needs a v without zeros: either its hull does not contain 0, or
-//!   Re(s v(z)/t^k) > 0 on every arc, with t = z - c, a fixed sign s, and k the number of leading
-//!   Taylor coefficients of v at c that are proved to be exactly zero. Then v/t^k maps the circle
-//!   into a half plane, so its winding number about 0 is 0, and by the argument principle v has
-//!   exactly k zeros in the disc, all of them at c. With k leading coefficients of u proved to be
-//!   zero as well, u/v has a removable singularity there and is analytic in the disc.
+//! - a quotient u/v, a logarithm, a root or a real power needs to know the zeros of v (or u) in the
+//!   disc. They are counted by the argument principle: following the argument of v along the upper
+//!   half circle from c + r to c - r, it changes by pi N, N the number of zeros in the disc with
+//!   their multiplicities (the lower half is the mirror image). On an arc whose rectangle does not
+//!   contain 0 the argument varies by less than pi, and neighbouring arcs share a point, so the
+//!   branch is carried from arc to arc without ambiguity;
+//! - log u is analytic if u has no zero (the disc is simply connected), and on the arcs it is
+//!   log|u| plus i times the argument so followed, from 0 at c + r, where u > 0. Roots and real
+//!   powers are exp(q log u);
+//! - u/v is analytic if v has no zero, or if it has exactly k zeros, k leading Taylor coefficients
+//!   of v at c are proved to be exactly zero (so that all its zeros are at c), and k leading
+//!   coefficients of u are too: then the singularity at c is removable;
+//! - the inverse trigonometric and hyperbolic functions need a hull off their cuts, fabs a hull on
+//!   one side of the imaginary axis.
 
 use rug::{Float, Rational};
 
@@ -81,7 +87,12 @@ struct Circle<'a> {
     leading: Option<Vec<Vec<Option<Exact>>>>,
 }
 
-fn evaluate(formula: &Formula, centre: &Centre, radius: &Float, arcs: usize) -> Result<Radius, Refusal> {
+fn evaluate(
+    formula: &Formula,
+    centre: &Centre,
+    radius: &Float,
+    arcs: usize,
+) -> Result<Radius, Refusal> {
     let mut circle = Circle {
         formula,
         centre,
@@ -90,7 +101,11 @@ fn evaluate(formula: &Formula, centre: &Centre, radius: &Float, arcs: usize) -> 
         leading: None,
     };
     for (node, operation) in formula.operations().iter().enumerate() {
-        let refuse = |kind| Refusal { node, kind, proved: false };
+        let refuse = |kind| Refusal {
+            node,
+            kind,
+            proved: false,
+        };
         let arcs = circle.operation(operation).map_err(refuse)?;
         if !arcs.iter().all(Rectangle::is_finite) {
             return Err(refuse(RefusalKind::Unbounded));
@@ -98,7 +113,12 @@ fn evaluate(formula: &Formula, centre: &Centre, radius: &Float, arcs: usize) -> 
         circle.values.push(Values { arcs });
     }
     let root = &circle.values[formula.root()];
-    Ok(root.arcs.iter().map(Rectangle::magnitude).max().unwrap_or(Radius::INFINITY))
+    Ok(root
+        .arcs
+        .iter()
+        .map(Rectangle::magnitude)
+        .max()
+        .unwrap_or(Radius::INFINITY))
 }
 
 /// Rectangles that cover radius * e^(i theta), theta in [j pi/arcs, (j+1) pi/arcs].
@@ -107,9 +127,13 @@ fn offsets(radius: &Float, arcs: usize) -> Vec<Rectangle> {
     let radius = WideInterval::new(radius.clone(), radius.clone());
     (0..arcs)
         .map(|j| {
-            let share = |k: usize| WideInterval::from_rational(&Rational::from((k, arcs)), PRECISION);
+            let share =
+                |k: usize| WideInterval::from_rational(&Rational::from((k, arcs)), PRECISION);
             let angle = pi.mul(&share(j)).hull(&pi.mul(&share(j + 1)));
-            Rectangle { real: radius.mul(&angle.cos()), imaginary: radius.mul(&angle.sin()) }
+            Rectangle {
+                real: radius.mul(&angle.cos()),
+                imaginary: radius.mul(&angle.sin()),
+            }
         })
         .collect()
 }
@@ -122,7 +146,12 @@ impl Circle<'_> {
         arcs.map(|z| f(z).ok_or(RefusalKind::NotAnalytic)).collect()
     }
 
-    fn pairs(&self, a: NodeId, b: NodeId, f: impl Fn(&Rectangle, &Rectangle) -> Option<Rectangle>) -> Outcome {
+    fn pairs(
+        &self,
+        a: NodeId,
+        b: NodeId,
+        f: impl Fn(&Rectangle, &Rectangle) -> Option<Rectangle>,
+    ) -> Outcome {
         let count = self.values[a].arcs.len().max(self.values[b].arcs.len());
         (0..count)
             .map(|arc| {
@@ -137,9 +166,9 @@ impl Circle<'_> {
                 let centre = self.centre.wide_interval(PRECISION);
                 Ok(self.offsets.iter().map(|t| t.add_real(&centre)).collect())
             }
-            Operation::Rational(x) => {
-                Ok(vec![Rectangle::from_real(WideInterval::from_rational(x, PRECISION))])
-            }
+            Operation::Rational(x) => Ok(vec![Rectangle::from_real(WideInterval::from_rational(
+                x, PRECISION,
+            ))]),
             Operation::Pi => Ok(vec![Rectangle::from_real(WideInterval::pi(PRECISION))]),
             Operation::Negate(a) => self.each(*a, |z| Some(z.neg())),
             Operation::Add(a, b) => self.pairs(*a, *b, |z, w| Some(z.add(w))),
@@ -148,31 +177,64 @@ impl Circle<'_> {
             Operation::Multiply(a, b) => self.pairs(*a, *b, |z, w| Some(z.mul(w))),
             Operation::Divide(a, b) => self.quotient(*a, *b),
             Operation::PowerInteger(a, n) => {
-                if *n < 0 && !self.free_of_zeros(*a, 0) {
+                if *n < 0 && !self.has_zeros(*a, 0) {
                     return Err(RefusalKind::DivisionByZero);
                 }
                 self.each(*a, |z| z.pow_integer(*n))
             }
-            Operation::PowerRational(a, q) => {
-                self.off_negative_axis(*a)?;
-                self.each(*a, |z| z.pow_rational(q))
-            }
+            Operation::PowerRational(a, q) => Self::power(&self.values[*a], q),
             Operation::Power(a, b) => {
-                self.off_negative_axis(*a)?;
-                self.pairs(*a, *b, |z, w| Some(z.log()?.mul(w).exp()))
+                let logarithm = Values {
+                    arcs: Self::logarithm(&self.values[*a])?,
+                };
+                let count = logarithm.arcs.len().max(self.values[*b].arcs.len());
+                let exponents = &self.values[*b];
+                Ok((0..count)
+                    .map(|arc| logarithm.at(arc).mul(exponents.at(arc)).exp())
+                    .collect())
             }
             Operation::Apply(function, a) => self.apply(*function, *a),
         }
     }
 
-    fn off_negative_axis(&self, node: NodeId) -> Result<(), RefusalKind> {
-        if self.values[node].hull().meets_negative_axis() { Err(RefusalKind::NotAnalytic) } else { Ok(()) }
+    /// Encloses log u on the arcs, u = `values`; refused unless u is proved to have no zero in the
+    /// disc and to be positive at both real points of the circle.
+    fn logarithm(values: &Values) -> Outcome {
+        let arguments = arguments(values).ok_or(RefusalKind::NotAnalytic)?;
+        // One arc (a constant) is real; otherwise the argument starts and ends at a multiple of pi.
+        // It is 0 where 0 is the only multiple of pi in the arc's range.
+        let only_zero = |argument: Option<&WideInterval>| {
+            argument.is_some_and(|a| a.contains_zero() && *a.lower() > -3 && *a.upper() < 3)
+        };
+        if !only_zero(arguments.first()) || !only_zero(arguments.last()) {
+            return Err(RefusalKind::NotAnalytic);
+        }
+        let half = WideInterval::from_rational(&Rational::from((1, 2)), PRECISION);
+        let logarithms = values.arcs.iter().zip(arguments).map(|(z, argument)| {
+            let size = z.real.square().add(&z.imaginary.square()).log();
+            Some(Rectangle {
+                real: size?.mul(&half),
+                imaginary: argument,
+            })
+        });
+        logarithms
+            .collect::<Option<_>>()
+            .ok_or(RefusalKind::NotAnalytic)
+    }
+
+    /// Encloses u^q = exp(q log u) on the arcs.
+    fn power(values: &Values, q: &Rational) -> Outcome {
+        let q = WideInterval::from_rational(q, PRECISION);
+        Ok(Self::logarithm(values)?
+            .iter()
+            .map(|z| z.scale(&q).exp())
+            .collect())
     }
 
     fn quotient(&mut self, a: NodeId, b: NodeId) -> Outcome {
         if self.values[b].hull().contains_zero() {
             let zeros = self.exact_zeros(b);
-            if !self.free_of_zeros(b, zeros) || self.exact_zeros(a) < zeros {
+            if !self.has_zeros(b, zeros) || self.exact_zeros(a) < zeros {
                 return Err(RefusalKind::DivisionByZero);
             }
         }
@@ -185,66 +247,87 @@ impl Circle<'_> {
         let leading = self
             .leading
             .get_or_insert_with(|| leading_coefficients(self.formula, self.centre, LEADING));
-        leading[node].iter().take_while(|c| c.as_ref().is_some_and(Exact::is_zero)).count()
+        leading[node]
+            .iter()
+            .take_while(|c| c.as_ref().is_some_and(Exact::is_zero))
+            .count()
     }
 
-    /// Proves that the function has no zero in the disc but one of order `zeros` at the centre.
-    fn free_of_zeros(&self, node: NodeId, zeros: usize) -> bool {
+    /// Proves that the function has exactly `zeros` zeros in the disc.
+    fn has_zeros(&self, node: NodeId, zeros: usize) -> bool {
         let values = &self.values[node];
         if zeros == 0 && !values.hull().contains_zero() {
             return true;
         }
-        if values.arcs.len() < self.offsets.len() {
+        let Some(arguments) = arguments(values) else {
             return false;
-        }
-        let exponent = i32::try_from(zeros).unwrap_or(i32::MAX);
-        let mut sign = None;
-        values.arcs.iter().zip(&self.offsets).all(|(value, offset)| {
-            let Some(quotient) = offset.pow_integer(exponent).and_then(|power| value.div(&power)) else {
-                return false;
-            };
-            let positive = quotient.real.is_positive();
-            if !positive && !quotient.real.is_negative() {
-                return false;
-            }
-            *sign.get_or_insert(positive) == positive
-        })
+        };
+        let (Some(first), Some(last)) = (arguments.first(), arguments.last()) else {
+            return false;
+        };
+        // At both ends the function is real: the argument is a multiple of pi there, 0 or pi at
+        // the first. The change is pi N with N between the bounds below.
+        let Some(change) = last.sub(first).div(&WideInterval::pi(PRECISION)) else {
+            return false;
+        };
+        let zeros = i64::try_from(zeros).unwrap_or(i64::MAX - 1);
+        *change.lower() > zeros - 1 && *change.upper() < zeros + 1
     }
 
     fn apply(&self, function: Function, a: NodeId) -> Outcome {
-        let hull = self.values[a].hull();
+        let values = &self.values[a];
+        let constant = |x: i32| WideInterval::from_rational(&Rational::from(x), PRECISION);
+        let one = constant(1);
+        let logarithm_of = |base: i32| constant(base).log().ok_or(RefusalKind::NotAnalytic);
+        let in_base = |base: i32| {
+            let factor = one
+                .div(&logarithm_of(base)?)
+                .ok_or(RefusalKind::NotAnalytic)?;
+            Ok(Self::logarithm(values)?
+                .iter()
+                .map(|z| z.scale(&factor))
+                .collect())
+        };
+        match function {
+            Function::Log => return Self::logarithm(values),
+            Function::Log2 => return in_base(2),
+            Function::Log10 => return in_base(10),
+            Function::Log1p => {
+                let shifted = values.arcs.iter().map(|z| z.add_real(&one)).collect();
+                return Self::logarithm(&Values { arcs: shifted });
+            }
+            Function::Sqrt => return Self::power(values, &Rational::from((1, 2))),
+            Function::Cbrt => {
+                let third = Rational::from((1, 3));
+                let negative = values.arcs.iter().map(Rectangle::neg).collect();
+                return Self::power(values, &third).or_else(|_| {
+                    let root = Self::power(&Values { arcs: negative }, &third)?;
+                    Ok(root.iter().map(Rectangle::neg).collect())
+                });
+            }
+            _ => {}
+        }
+        let hull = values.hull();
         let (x, y) = (&hull.real, &hull.imaginary);
         let within = |part: &WideInterval| *part.lower() > -1 && *part.upper() < 1;
         let analytic = match function {
-            Function::Exp | Function::Exp2 | Function::Expm1 | Function::Sin | Function::Cos
-            | Function::Sinh | Function::Cosh | Function::Erf | Function::Erfc => true,
-            Function::Log | Function::Log2 | Function::Log10 | Function::Sqrt => *x.lower() > 0 || !hull.meets_negative_axis(),
-            Function::Log1p => *x.lower() > -1,
-            Function::Cbrt | Function::Fabs => x.is_positive() || x.is_negative(),
+            Function::Fabs => x.is_positive() || x.is_negative(),
             Function::Tan => x.tan().is_some(),
             Function::Tanh => y.tan().is_some(),
             Function::Asin | Function::Acos | Function::Atanh => within(x),
             Function::Atan | Function::Asinh => within(y) || !x.contains_zero(),
             Function::Acosh => *x.lower() > 1,
+            _ => true,
         };
         if !analytic {
             return Err(RefusalKind::NotAnalytic);
         }
-        let constant = |x: i32| WideInterval::from_rational(&Rational::from(x), PRECISION);
-        let one = constant(1);
-        let logarithm_of = |base: i32| constant(base).log();
+        let two = logarithm_of(2)?;
         let negative = x.is_negative();
         self.each(a, |z| match function {
             Function::Exp => Some(z.exp()),
-            Function::Exp2 => Some(z.scale(&logarithm_of(2)?).exp()),
+            Function::Exp2 => Some(z.scale(&two).exp()),
             Function::Expm1 => Some(z.exp().add_real(&one.neg())),
-            Function::Log => z.log(),
-            Function::Log2 => Some(z.log()?.scale(&one.div(&logarithm_of(2)?)?)),
-            Function::Log10 => Some(z.log()?.scale(&one.div(&logarithm_of(10)?)?)),
-            Function::Log1p => z.add_real(&one).log(),
-            Function::Sqrt => z.sqrt(),
-            Function::Cbrt if negative => Some(z.neg().pow_rational(&Rational::from((1, 3)))?.neg()),
-            Function::Cbrt => z.pow_rational(&Rational::from((1, 3))),
             Function::Sin => Some(z.sin()),
             Function::Cos => Some(z.cos()),
             Function::Tan => z.tan(),
@@ -260,6 +343,53 @@ impl Circle<'_> {
             Function::Erf => Some(z.erf()),
             Function::Erfc => Some(z.erfc()),
             Function::Fabs => Some(if negative { z.neg() } else { z.clone() }),
+            Function::Log
+            | Function::Log2
+            | Function::Log10
+            | Function::Log1p
+            | Function::Sqrt
+            | Function::Cbrt => None,
         })
     }
+}
+
+/// The argument of a function on the arcs, followed continuously from a value in (-pi, 2 pi) on the
+/// first; `None` if some arc's rectangle contains 0.
+///
+/// A rectangle without 0 that meets the negative axis lies in the left half plane, where the
+/// argument is pi + arg(-z). Each range is narrower than pi, so of all its shifts by multiples of
+/// 2 pi exactly one can overlap the range before it, with which it shares the value at the common
+/// point of the two arcs.
+fn arguments(values: &Values) -> Option<Vec<WideInterval>> {
+    let pi = WideInterval::pi(PRECISION);
+    let turn = pi.add(&pi);
+    let mut found: Vec<WideInterval> = Vec::with_capacity(values.arcs.len());
+    for arc in &values.arcs {
+        if arc.contains_zero() {
+            return None;
+        }
+        let principal = match arc.argument() {
+            Some(argument) => argument,
+            None => arc.neg().argument()?.add(&pi),
+        };
+        // Two ranges narrower than 3 < pi can overlap in one shift only, whatever the rounding.
+        if Float::with_val(PRECISION, principal.upper() - principal.lower()) > 3 {
+            return None;
+        }
+        let Some(before) = found.last() else {
+            found.push(principal);
+            continue;
+        };
+        let distance = before.midpoint() - principal.midpoint();
+        let turns = (distance / turn.midpoint()).round().to_integer()?;
+        let shift = turn.mul(&WideInterval::from_rational(
+            &Rational::from(turns),
+            PRECISION,
+        ));
+        let shifted = principal.add(&shift);
+        // The true argument at the common point lies in both.
+        before.intersection(&shifted)?;
+        found.push(shifted);
+    }
+    Some(found)
 }

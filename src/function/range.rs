@@ -27,11 +27,15 @@ pub fn range(formula: &Formula, over: &WideInterval) -> Result<WideInterval, Ref
             Operation::Multiply(a, b) => values[*a].mul(&values[*b]),
             Operation::Divide(a, b) => {
                 let proved = values[*b].is_exact() && !values[*a].contains_zero();
-                values[*a].div(&values[*b]).ok_or(refuse(RefusalKind::DivisionByZero, proved))?
+                values[*a]
+                    .div(&values[*b])
+                    .ok_or(refuse(RefusalKind::DivisionByZero, proved))?
             }
             Operation::PowerInteger(a, n) => {
                 let proved = values[*a].is_exact();
-                values[*a].pow_integer(*n).ok_or(refuse(RefusalKind::DivisionByZero, proved))?
+                values[*a]
+                    .pow_integer(*n)
+                    .ok_or(refuse(RefusalKind::DivisionByZero, proved))?
             }
             Operation::PowerRational(a, q) => {
                 let x = &values[*a];

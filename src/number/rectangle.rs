@@ -57,7 +57,10 @@ impl Rectangle {
     /// The smallest rectangle that holds both.
     #[must_use]
     pub fn hull(&self, other: &Self) -> Self {
-        Self::new(self.real.hull(&other.real), self.imaginary.hull(&other.imaginary))
+        Self::new(
+            self.real.hull(&other.real),
+            self.imaginary.hull(&other.imaginary),
+        )
     }
 
     /// -z.
@@ -75,13 +78,19 @@ impl Rectangle {
     /// z + w.
     #[must_use]
     pub fn add(&self, other: &Self) -> Self {
-        Self::new(self.real.add(&other.real), self.imaginary.add(&other.imaginary))
+        Self::new(
+            self.real.add(&other.real),
+            self.imaginary.add(&other.imaginary),
+        )
     }
 
     /// z - w.
     #[must_use]
     pub fn sub(&self, other: &Self) -> Self {
-        Self::new(self.real.sub(&other.real), self.imaginary.sub(&other.imaginary))
+        Self::new(
+            self.real.sub(&other.real),
+            self.imaginary.sub(&other.imaginary),
+        )
     }
 
     /// z + x for a real interval x.
@@ -100,8 +109,12 @@ impl Rectangle {
     #[must_use]
     pub fn mul(&self, other: &Self) -> Self {
         Self::new(
-            self.real.mul(&other.real).sub(&self.imaginary.mul(&other.imaginary)),
-            self.real.mul(&other.imaginary).add(&self.imaginary.mul(&other.real)),
+            self.real
+                .mul(&other.real)
+                .sub(&self.imaginary.mul(&other.imaginary)),
+            self.real
+                .mul(&other.imaginary)
+                .add(&self.imaginary.mul(&other.real)),
         )
     }
 
@@ -109,19 +122,28 @@ impl Rectangle {
     #[must_use]
     pub fn square(&self) -> Self {
         let cross = self.real.mul(&self.imaginary);
-        Self::new(self.real.square().sub(&self.imaginary.square()), cross.add(&cross))
+        Self::new(
+            self.real.square().sub(&self.imaginary.square()),
+            cross.add(&cross),
+        )
     }
 
     /// z / w = z conj(w) / |w|^2; `None` if w may be 0.
     #[must_use]
     pub fn div(&self, other: &Self) -> Option<Self> {
         if other.imaginary.is_exact() && other.imaginary.contains_zero() {
-            return Some(Self::new(self.real.div(&other.real)?, self.imaginary.div(&other.real)?));
+            return Some(Self::new(
+                self.real.div(&other.real)?,
+                self.imaginary.div(&other.real)?,
+            ));
         }
         let size = other.real.square().add(&other.imaginary.square());
         let conjugate = Self::new(other.real.clone(), other.imaginary.neg());
         let product = self.mul(&conjugate);
-        Some(Self::new(product.real.div(&size)?, product.imaginary.div(&size)?))
+        Some(Self::new(
+            product.real.div(&size)?,
+            product.imaginary.div(&size)?,
+        ))
     }
 
     /// z^n; `None` for a negative n if z may be 0.
@@ -148,7 +170,10 @@ impl Rectangle {
     #[must_use]
     pub fn exp(&self) -> Self {
         let size = self.real.exp();
-        Self::new(size.mul(&self.imaginary.cos()), size.mul(&self.imaginary.sin()))
+        Self::new(
+            size.mul(&self.imaginary.cos()),
+            size.mul(&self.imaginary.sin()),
+        )
     }
 
     /// Principal logarithm: log|z| + i arg z; `None` if the rectangle meets (-inf, 0].
@@ -162,7 +187,14 @@ impl Rectangle {
 
     /// arg z in (-pi, pi). On x > 0 it is atan(y/x); on y > 0 it is pi/2 - atan(x/y), on y < 0
     /// -pi/2 - atan(x/y); a rectangle off (-inf, 0] lies in one of these half planes.
-    fn argument(&self) -> Option<WideInterval> {
+    ///
+    /// # Errors
+    ///
+    /// `None` if the rectangle meets (-inf, 0].
+    pub fn argument(&self) -> Option<WideInterval> {
+        if self.meets_negative_axis() {
+            return None;
+        }
         let (x, y) = (&self.real, &self.imaginary);
         if x.is_positive() {
             return Some(y.div(x)?.atan());
@@ -170,7 +202,11 @@ impl Rectangle {
         let half = WideInterval::from_rational(&Rational::from((1, 2)), x.precision());
         let quarter = WideInterval::pi(x.precision()).mul(&half);
         let angle = x.div(y)?.atan();
-        if y.is_positive() { Some(quarter.sub(&angle)) } else { Some(quarter.neg().sub(&angle)) }
+        if y.is_positive() {
+            Some(quarter.sub(&angle))
+        } else {
+            Some(quarter.neg().sub(&angle))
+        }
     }
 
     /// z^q = exp(q log z), principal.
@@ -225,7 +261,10 @@ impl Rectangle {
     /// tan z = (sin 2x + i sinh 2y)/(cos 2x + cosh 2y); the denominator is 2 |cos z|^2.
     #[must_use]
     pub fn tan(&self) -> Option<Self> {
-        let (x, y) = (self.real.add(&self.real), self.imaginary.add(&self.imaginary));
+        let (x, y) = (
+            self.real.add(&self.real),
+            self.imaginary.add(&self.imaginary),
+        );
         let size = x.cos().add(&y.cosh());
         if !size.is_positive() {
             return None;
@@ -260,7 +299,11 @@ impl Rectangle {
         let turned = self.times_i();
         let one = self.constant(1);
         let half = WideInterval::from_rational(&Rational::from((1, 2)), self.real.precision());
-        let difference = turned.neg().add_real(&one).log()?.sub(&turned.add_real(&one).log()?);
+        let difference = turned
+            .neg()
+            .add_real(&one)
+            .log()?
+            .sub(&turned.add_real(&one).log()?);
         Some(difference.times_i().scale(&half))
     }
 
@@ -278,7 +321,10 @@ impl Rectangle {
     #[must_use]
     pub fn acosh(&self) -> Option<Self> {
         let one = self.constant(1);
-        let root = self.add_real(&one.neg()).sqrt()?.mul(&self.add_real(&one).sqrt()?);
+        let root = self
+            .add_real(&one.neg())
+            .sqrt()?
+            .mul(&self.add_real(&one).sqrt()?);
         self.add(&root).log()
     }
 
@@ -287,7 +333,12 @@ impl Rectangle {
     pub fn atanh(&self) -> Option<Self> {
         let one = self.constant(1);
         let half = WideInterval::from_rational(&Rational::from((1, 2)), self.real.precision());
-        Some(self.add_real(&one).log()?.sub(&self.neg().add_real(&one).log()?).scale(&half))
+        Some(
+            self.add_real(&one)
+                .log()?
+                .sub(&self.neg().add_real(&one).log()?)
+                .scale(&half),
+        )
     }
 
     /// The error function.
@@ -297,9 +348,15 @@ impl Rectangle {
     #[must_use]
     pub fn erf(&self) -> Self {
         let precision = self.real.precision();
-        let segment =
-            Self::new(self.real.clone(), self.imaginary.hull(&WideInterval::zero(precision)));
-        let slope = segment.square().neg().exp().scale(&two_over_root_pi(precision));
+        let segment = Self::new(
+            self.real.clone(),
+            self.imaginary.hull(&WideInterval::zero(precision)),
+        );
+        let slope = segment
+            .square()
+            .neg()
+            .exp()
+            .scale(&two_over_root_pi(precision));
         let rise = slope.scale(&self.imaginary).times_i();
         rise.add_real(&self.real.erf())
     }
@@ -332,7 +389,12 @@ impl Rectangle {
             Some(other) if other.upper() < one_way.upper() => other.upper(),
             _ => one_way.upper(),
         };
-        let spread = Float::with_val_round(precision, steepest * &self.imaginary.magnitude(), rug::float::Round::Up).0;
+        let spread = Float::with_val_round(
+            precision,
+            steepest * &self.imaginary.magnitude(),
+            rug::float::Round::Up,
+        )
+        .0;
         let deviation = WideInterval::new(Float::with_val(precision, -&spread), spread);
         let scaled = Self::new(scaled.add(&deviation), deviation);
         self.square().neg().exp().mul(&scaled)

@@ -26,14 +26,32 @@ impl WideInterval {
     /// The interval from `lower` to `upper`; NaN ends become infinite, so that the result always
     /// encloses what the ends were meant to bound.
     pub fn new(lower: Float, upper: Float) -> Self {
-        let lower = if lower.is_nan() { infinite(lower.prec(), Special::NegInfinity) } else { lower };
-        let upper = if upper.is_nan() { infinite(upper.prec(), Special::Infinity) } else { upper };
-        if lower > upper { Self { lower: upper, upper: lower } } else { Self { lower, upper } }
+        let lower = if lower.is_nan() {
+            infinite(lower.prec(), Special::NegInfinity)
+        } else {
+            lower
+        };
+        let upper = if upper.is_nan() {
+            infinite(upper.prec(), Special::Infinity)
+        } else {
+            upper
+        };
+        if lower > upper {
+            Self {
+                lower: upper,
+                upper: lower,
+            }
+        } else {
+            Self { lower, upper }
+        }
     }
 
     /// The number 0.
     pub fn zero(precision: u32) -> Self {
-        Self { lower: Float::new(precision), upper: Float::new(precision) }
+        Self {
+            lower: Float::new(precision),
+            upper: Float::new(precision),
+        }
     }
 
     /// Encloses a rational number.
@@ -115,23 +133,48 @@ impl WideInterval {
     /// The smallest interval that holds both.
     #[must_use]
     pub fn hull(&self, other: &Self) -> Self {
-        let lower = if self.lower <= other.lower { &self.lower } else { &other.lower };
-        let upper = if self.upper >= other.upper { &self.upper } else { &other.upper };
-        Self { lower: lower.clone(), upper: upper.clone() }
+        let lower = if self.lower <= other.lower {
+            &self.lower
+        } else {
+            &other.lower
+        };
+        let upper = if self.upper >= other.upper {
+            &self.upper
+        } else {
+            &other.upper
+        };
+        Self {
+            lower: lower.clone(),
+            upper: upper.clone(),
+        }
     }
 
     /// The numbers in both; `None` if there are none.
     #[must_use]
     pub fn intersection(&self, other: &Self) -> Option<Self> {
-        let lower = if self.lower >= other.lower { &self.lower } else { &other.lower };
-        let upper = if self.upper <= other.upper { &self.upper } else { &other.upper };
-        (lower <= upper).then(|| Self { lower: lower.clone(), upper: upper.clone() })
+        let lower = if self.lower >= other.lower {
+            &self.lower
+        } else {
+            &other.lower
+        };
+        let upper = if self.upper <= other.upper {
+            &self.upper
+        } else {
+            &other.upper
+        };
+        (lower <= upper).then(|| Self {
+            lower: lower.clone(),
+            upper: upper.clone(),
+        })
     }
 
     /// -x.
     #[must_use]
     pub fn neg(&self) -> Self {
-        Self { lower: Float::with_val(self.precision(), -&self.upper), upper: Float::with_val(self.precision(), -&self.lower) }
+        Self {
+            lower: Float::with_val(self.precision(), -&self.upper),
+            upper: Float::with_val(self.precision(), -&self.lower),
+        }
     }
 
     /// x + y.
@@ -220,11 +263,20 @@ impl WideInterval {
         let (a, b) = (&self.lower, &self.upper);
         let (c, d) = (&other.lower, &other.upper);
         let (low_by, high_by) = if *c > 0 {
-            ((a, if *a >= 0 { d } else { c }), (b, if *b >= 0 { c } else { d }))
+            (
+                (a, if *a >= 0 { d } else { c }),
+                (b, if *b >= 0 { c } else { d }),
+            )
         } else {
-            ((b, if *b >= 0 { d } else { c }), (a, if *a >= 0 { c } else { d }))
+            (
+                (b, if *b >= 0 { d } else { c }),
+                (a, if *a >= 0 { c } else { d }),
+            )
         };
-        Some(Self::new(quotient(low_by.0, low_by.1, Round::Down), quotient(high_by.0, high_by.1, Round::Up)))
+        Some(Self::new(
+            quotient(low_by.0, low_by.1, Round::Down),
+            quotient(high_by.0, high_by.1, Round::Up),
+        ))
     }
 
     /// |x|.
@@ -235,7 +287,10 @@ impl WideInterval {
         } else if self.upper <= 0 {
             self.neg()
         } else {
-            Self { lower: Float::new(self.precision()), upper: self.magnitude() }
+            Self {
+                lower: Float::new(self.precision()),
+                upper: self.magnitude(),
+            }
         }
     }
 
@@ -252,7 +307,10 @@ impl WideInterval {
     /// x^n; `None` for a negative n if x may be 0. 0^0 = 1.
     #[must_use]
     pub fn pow_integer(&self, n: i32) -> Option<Self> {
-        let one = Self { lower: Float::with_val(self.precision(), 1), upper: Float::with_val(self.precision(), 1) };
+        let one = Self {
+            lower: Float::with_val(self.precision(), 1),
+            upper: Float::with_val(self.precision(), 1),
+        };
         let mut result = one.clone();
         let base = if n % 2 == 0 { self.abs() } else { self.clone() };
         // Even powers of |x| and odd powers of x are monotone: the ends suffice.
@@ -276,12 +334,20 @@ impl WideInterval {
                     square.mul_assign_round(&copy, toward);
                 }
             }
-            if negative && n % 2 != 0 { -power } else { power }
+            if negative && n % 2 != 0 {
+                -power
+            } else {
+                power
+            }
         };
         if n != 0 {
             result = Self::new(end(&base.lower, Round::Down), end(&base.upper, Round::Up));
         }
-        if n < 0 { one.div(&result) } else { Some(result) }
+        if n < 0 {
+            one.div(&result)
+        } else {
+            Some(result)
+        }
     }
 
     /// A rising function, evaluated at the ends with directed rounding.
@@ -435,9 +501,15 @@ impl WideInterval {
             return Some(Self::zero(self.precision()));
         }
         // Rising from 0.
-        let top = Self { lower: self.upper.clone(), upper: self.upper.clone() };
+        let top = Self {
+            lower: self.upper.clone(),
+            upper: self.upper.clone(),
+        };
         let top = exponent.mul(&top.log()?).exp();
-        Some(Self { lower: Float::new(self.precision()), upper: top.upper })
+        Some(Self {
+            lower: Float::new(self.precision()),
+            upper: top.upper,
+        })
     }
 
     /// Cosine.
@@ -459,11 +531,18 @@ impl WideInterval {
 
     fn trigonometric(&self, shift: &Rational, f: impl Fn(&mut Float, Round) -> Ordering) -> Self {
         let precision = self.precision();
-        let one = Self { lower: Float::with_val(precision, -1), upper: Float::with_val(precision, 1) };
+        let one = Self {
+            lower: Float::with_val(precision, -1),
+            upper: Float::with_val(precision, 1),
+        };
         if !self.is_finite() {
             return one;
         }
-        let exponent = [&self.lower, &self.upper].iter().filter_map(|x| x.get_exp()).max().unwrap_or(0);
+        let exponent = [&self.lower, &self.upper]
+            .iter()
+            .filter_map(|x| x.get_exp())
+            .max()
+            .unwrap_or(0);
         if exponent > 4096 {
             return one;
         }
@@ -473,11 +552,15 @@ impl WideInterval {
             lower: Float::with_val(working, &self.lower),
             upper: Float::with_val(working, &self.upper),
         };
-        let Some(turns) = widened.div(&Self::pi(working)) else { return one };
+        let Some(turns) = widened.div(&Self::pi(working)) else {
+            return one;
+        };
         let turns = turns.sub(&Self::from_rational(shift, working));
         let first = turns.lower.clone().ceil().to_integer();
         let last = turns.upper.clone().floor().to_integer();
-        let (Some(first), Some(last)) = (first, last) else { return one };
+        let (Some(first), Some(last)) = (first, last) else {
+            return one;
+        };
         let (mut minus, mut plus) = (false, false);
         if first <= last {
             if Integer::from(&last - &first) >= 1 {
@@ -496,7 +579,10 @@ impl WideInterval {
         let lower = if minus {
             Float::with_val(precision, -1)
         } else {
-            let (a, b) = (value(&self.lower, Round::Down), value(&self.upper, Round::Down));
+            let (a, b) = (
+                value(&self.lower, Round::Down),
+                value(&self.upper, Round::Down),
+            );
             if a <= b { a } else { b }
         };
         let upper = if plus {

@@ -72,7 +72,10 @@ mod tests {
             coefficients: [5, -2, 0, 7].map(Rational::from).to_vec(),
         };
         let formula = polynomial.to_formula();
-        let quarter = Centre { rational: Rational::new(), pi_multiple: Rational::from((1, 4)) };
+        let quarter = Centre {
+            rational: Rational::new(),
+            pi_multiple: Rational::from((1, 4)),
+        };
         let all = leading_coefficients(&formula, &quarter, 4);
         let found = &all[formula.root()];
         // In powers of x - pi/4 = u/3: c_k 3^k.
