@@ -25,6 +25,9 @@
 //! - the inverse trigonometric and hyperbolic functions need a hull off their cuts, fabs a hull on
 //!   one side of the imaginary axis.
 
+use std::cell::RefCell;
+use std::collections::HashMap;
+
 use rug::{Float, Rational};
 
 use crate::function::exact::{Centre, Exact, leading_coefficients};
@@ -41,8 +44,8 @@ const PRECISION: u32 = 53;
 const LEADING: usize = 8;
 
 /// Proves f analytic in the open disc |z - c| < radius and continuous on the closed one, and
-/// bounds |f| there. `arcs` rectangles cover the upper half circle; four times as many are tried
-/// before a refusal.
+/// bounds |f| there. `arcs` (at least 1) rectangles cover the upper half circle: more of them give
+/// a smaller bound and fewer refusals.
 ///
 /// # Errors
 ///
@@ -53,7 +56,33 @@ pub fn magnitude_on_disc(
     radius: &Float,
     arcs: usize,
 ) -> Result<Radius, Refusal> {
-    evaluate(formula, centre, radius, arcs).or_else(|_| evaluate(formula, centre, radius, 4 * arcs))
+    let mut circle = Circle {
+        formula,
+        centre,
+        offsets: offsets(radius, arcs.max(1)),
+        values: Vec::with_capacity(formula.operations().len()),
+        values_at_centre: None,
+        leading: None,
+    };
+    for (node, operation) in formula.operations().iter().enumerate() {
+        let refuse = |kind| Refusal {
+            node,
+            kind,
+            proved: false,
+        };
+        let arcs = circle.operation(operation).map_err(refuse)?;
+        if !arcs.iter().all(Rectangle::is_finite) {
+            return Err(refuse(RefusalKind::Unbounded));
+        }
+        circle.values.push(Values { arcs });
+    }
+    let root = &circle.values[formula.root()];
+    Ok(root
+        .arcs
+        .iter()
+        .map(Rectangle::magnitude)
+        .max()
+        .unwrap_or(Radius::INFINITY))
 }
 
 /// An operation on the circle: one enclosure an arc, or a single one where it is constant.
@@ -84,58 +113,37 @@ struct Circle<'a> {
     /// t = z - c on the arcs.
     offsets: Vec<Rectangle>,
     values: Vec<Values>,
+    /// Exactly known values at the centre, once they are asked for.
+    values_at_centre: Option<Vec<Vec<Option<Exact>>>>,
+    /// Exactly known leading coefficients there.
     leading: Option<Vec<Vec<Option<Exact>>>>,
-}
-
-fn evaluate(
-    formula: &Formula,
-    centre: &Centre,
-    radius: &Float,
-    arcs: usize,
-) -> Result<Radius, Refusal> {
-    let mut circle = Circle {
-        formula,
-        centre,
-        offsets: offsets(radius, arcs.max(1)),
-        values: Vec::with_capacity(formula.operations().len()),
-        leading: None,
-    };
-    for (node, operation) in formula.operations().iter().enumerate() {
-        let refuse = |kind| Refusal {
-            node,
-            kind,
-            proved: false,
-        };
-        let arcs = circle.operation(operation).map_err(refuse)?;
-        if !arcs.iter().all(Rectangle::is_finite) {
-            return Err(refuse(RefusalKind::Unbounded));
-        }
-        circle.values.push(Values { arcs });
-    }
-    let root = &circle.values[formula.root()];
-    Ok(root
-        .arcs
-        .iter()
-        .map(Rectangle::magnitude)
-        .max()
-        .unwrap_or(Radius::INFINITY))
 }
 
 /// Rectangles that cover radius * e^(i theta), theta in [j pi/arcs, (j+1) pi/arcs].
 fn offsets(radius: &Float, arcs: usize) -> Vec<Rectangle> {
-    let pi = WideInterval::pi(PRECISION);
     let radius = WideInterval::new(radius.clone(), radius.clone());
-    (0..arcs)
-        .map(|j| {
-            let share =
-                |k: usize| WideInterval::from_rational(&Rational::from((k, arcs)), PRECISION);
-            let angle = pi.mul(&share(j)).hull(&pi.mul(&share(j + 1)));
-            Rectangle {
-                real: radius.mul(&angle.cos()),
-                imaginary: radius.mul(&angle.sin()),
-            }
-        })
-        .collect()
+    with_unit_arcs(arcs, |unit| unit.iter().map(|z| z.scale(&radius)).collect())
+}
+
+/// The arcs of the unit circle, kept for the numbers of arcs that were asked for: they are the
+/// same for every disc.
+fn with_unit_arcs<T>(arcs: usize, f: impl FnOnce(&[Rectangle]) -> T) -> T {
+    thread_local! {
+        static KEPT: RefCell<HashMap<usize, Vec<Rectangle>>> = RefCell::new(HashMap::new());
+    }
+    KEPT.with_borrow_mut(|kept| {
+        f(kept.entry(arcs).or_insert_with(|| {
+            let pi = WideInterval::pi(PRECISION);
+            let angle = |k: usize| {
+                pi.mul(&WideInterval::from_rational(&Rational::from((k, arcs)), PRECISION))
+            };
+            let arc = |j: usize| {
+                let angles = angle(j).hull(&angle(j + 1));
+                Rectangle { real: angles.cos(), imaginary: angles.sin() }
+            };
+            (0..arcs).map(arc).collect()
+        }))
+    })
 }
 
 type Outcome = Result<Vec<Rectangle>, RefusalKind>;
@@ -232,25 +240,28 @@ impl Circle<'_> {
     }
 
     fn quotient(&mut self, a: NodeId, b: NodeId) -> Outcome {
-        if self.values[b].hull().contains_zero() {
+        if !self.has_zeros(b, 0) {
             let zeros = self.exact_zeros(b);
-            if !self.has_zeros(b, zeros) || self.exact_zeros(a) < zeros {
+            if zeros == 0 || !self.has_zeros(b, zeros) || self.exact_zeros(a) < zeros {
                 return Err(RefusalKind::DivisionByZero);
             }
         }
         self.pairs(a, b, Rectangle::div)
     }
 
-    /// Number of leading Taylor coefficients at the centre that are proved to be exactly zero.
+    /// Number of leading Taylor coefficients at the centre that are proved to be exactly zero. The
+    /// first coefficient alone is cheap and settles most cases.
     /// The operand is analytic, being evaluated already, as `leading_coefficients` demands.
     fn exact_zeros(&mut self, node: NodeId) -> usize {
-        let leading = self
-            .leading
-            .get_or_insert_with(|| leading_coefficients(self.formula, self.centre, LEADING));
-        leading[node]
-            .iter()
-            .take_while(|c| c.as_ref().is_some_and(Exact::is_zero))
-            .count()
+        let zeros = |all: &[Vec<Option<Exact>>]| {
+            all[node].iter().take_while(|c| c.as_ref().is_some_and(Exact::is_zero)).count()
+        };
+        let values =
+            self.values_at_centre.get_or_insert_with(|| leading_coefficients(self.formula, self.centre, 1));
+        if zeros(values) == 0 {
+            return 0;
+        }
+        zeros(self.leading.get_or_insert_with(|| leading_coefficients(self.formula, self.centre, LEADING)))
     }
 
     /// Proves that the function has exactly `zeros` zeros in the disc.
