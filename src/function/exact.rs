@@ -14,6 +14,8 @@ use rug::{Integer, Rational};
 
 use crate::function::exact::taylor::{Known, Taylor};
 use crate::function::formula::{Formula, Function, NodeId, Operation};
+use crate::function::series;
+use crate::number::ball::Ball;
 
 mod taylor;
 
@@ -33,6 +35,11 @@ impl Centre {
             rational,
             pi_multiple: Rational::new(),
         }
+    }
+
+    /// The point in a ball.
+    pub fn ball(&self, precision: u32) -> Ball {
+        ball_of(&self.rational, &self.pi_multiple, precision)
     }
 
     /// A double near the point, to steer a search with.
@@ -75,6 +82,11 @@ impl Exact {
         self.pi_multiple.is_zero().then_some(&self.rational)
     }
 
+    /// The number in a ball.
+    pub fn ball(&self, precision: u32) -> Ball {
+        ball_of(&self.rational, &self.pi_multiple, precision)
+    }
+
     /// b, if the number is b pi.
     fn as_pi_multiple(&self) -> Option<&Rational> {
         self.rational.is_zero().then_some(&self.pi_multiple)
@@ -90,22 +102,35 @@ impl From<Rational> for Exact {
     }
 }
 
+/// a + b pi, with enough guard bits that a cancellation costs no precision unless a + b pi is
+/// smaller than its parts by more than a factor of 2^64.
+fn ball_of(rational: &Rational, pi_multiple: &Rational, precision: u32) -> Ball {
+    let rational_part = |bits| Ball::from_rational(rational, bits);
+    if pi_multiple.is_zero() {
+        return rational_part(precision);
+    }
+    let bits = precision.saturating_add(64);
+    let pi_part = Ball::from_rational(pi_multiple, bits).mul(&Ball::pi(bits));
+    pi_part.add(&rational_part(bits)).with_precision(precision)
+}
+
 /// For every operation of the formula the first `count` Taylor coefficients in powers of
-/// (x - centre); `None` is a coefficient that is not known.
+/// (x - centre); `None` is a coefficient that is not known. Quotients are continued through
+/// removable singularities.
 ///
-/// A coefficient that is `Some` is the true one, *provided that the operation is analytic at the
-/// centre*, quotients being continued through removable singularities: the rules use
-/// 0 * unknown = 0, which is false where the unknown factor has a pole (x * (1/x)). The caller
-/// proves analyticity elsewhere, by a power series of more than one term or by an evaluation on a
-/// disc.
+/// A coefficient that is `Some` is the true one. The rules use 0 * unknown = 0, which would be false
+/// where the unknown factor has a pole (x * (1/x)); so the operations are evaluated as power series
+/// in balls beside, which refuses an operation that is not proved analytic at the centre, and from
+/// that operation on nothing is known.
 pub fn leading_coefficients(
     formula: &Formula,
     centre: &Centre,
     count: usize,
 ) -> Vec<Vec<Option<Exact>>> {
-    let mut coefficients = ExactCoefficients::new(formula.operations(), centre, count);
-    coefficients.extend_to(formula.operations().len(), &|_, _| None);
-    coefficients.nodes
+    let operations = formula.operations();
+    let mut coefficients = series::exact_coefficients(operations, centre, count);
+    coefficients.resize(operations.len(), vec![None; count]);
+    coefficients
 }
 
 /// The exactly known leading coefficients of the operations of a formula, computed in order and
@@ -127,6 +152,11 @@ impl<'a> ExactCoefficients<'a> {
             varies: Vec::new(),
             nodes: Vec::new(),
         }
+    }
+
+    /// The coefficients of all operations so far.
+    pub(crate) fn into_nodes(self) -> Vec<Vec<Option<Exact>>> {
+        self.nodes
     }
 
     /// The coefficients of an operation before the end of the last [`extend_to`](Self::extend_to).

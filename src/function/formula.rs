@@ -1,10 +1,13 @@
 //! A formula as a straight-line list of operations (a directed acyclic graph in which equal
 //! subexpressions are one node), so that evaluation is a loop and never recursion.
 
-use std::collections::HashMap;
 use std::ops::Range;
 
 use rug::Rational;
+
+mod builder;
+
+pub use builder::FormulaBuilder;
 
 /// Position of an operation in [`Formula::operations`].
 pub type NodeId = usize;
@@ -36,6 +39,65 @@ pub enum Function {
     Erf,
     Erfc,
     Fabs,
+}
+
+impl Function {
+    pub const ALL: [Self; 24] = [
+        Self::Sqrt,
+        Self::Cbrt,
+        Self::Exp,
+        Self::Exp2,
+        Self::Expm1,
+        Self::Log,
+        Self::Log2,
+        Self::Log10,
+        Self::Log1p,
+        Self::Sin,
+        Self::Cos,
+        Self::Tan,
+        Self::Asin,
+        Self::Acos,
+        Self::Atan,
+        Self::Sinh,
+        Self::Cosh,
+        Self::Tanh,
+        Self::Asinh,
+        Self::Acosh,
+        Self::Atanh,
+        Self::Erf,
+        Self::Erfc,
+        Self::Fabs,
+    ];
+
+    /// The name in ISO C.
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::Sqrt => "sqrt",
+            Self::Cbrt => "cbrt",
+            Self::Exp => "exp",
+            Self::Exp2 => "exp2",
+            Self::Expm1 => "expm1",
+            Self::Log => "log",
+            Self::Log2 => "log2",
+            Self::Log10 => "log10",
+            Self::Log1p => "log1p",
+            Self::Sin => "sin",
+            Self::Cos => "cos",
+            Self::Tan => "tan",
+            Self::Asin => "asin",
+            Self::Acos => "acos",
+            Self::Atan => "atan",
+            Self::Sinh => "sinh",
+            Self::Cosh => "cosh",
+            Self::Tanh => "tanh",
+            Self::Asinh => "asinh",
+            Self::Acosh => "acosh",
+            Self::Atanh => "atanh",
+            Self::Erf => "erf",
+            Self::Erfc => "erfc",
+            Self::Fabs => "fabs",
+        }
+    }
 }
 
 /// One operation; operands are earlier positions in the list.
@@ -93,6 +155,9 @@ impl Formula {
 
     /// True if the value does not depend on the variable.
     pub fn is_constant(&self) -> bool {
-        !self.operations.iter().any(|operation| matches!(operation, Operation::Variable))
+        !self
+            .operations
+            .iter()
+            .any(|operation| matches!(operation, Operation::Variable))
     }
 }
