@@ -16,6 +16,7 @@ use crate::function::exact::taylor::{Known, Taylor};
 use crate::function::formula::{Formula, Function, NodeId, Operation};
 use crate::function::series;
 use crate::number::ball::Ball;
+use crate::number::wide_interval::WideInterval;
 
 mod taylor;
 
@@ -40,6 +41,16 @@ impl Centre {
     /// The point in a ball.
     pub fn ball(&self, precision: u32) -> Ball {
         ball_of(&self.rational, &self.pi_multiple, precision)
+    }
+
+    /// Encloses the point.
+    pub fn wide_interval(&self, precision: u32) -> WideInterval {
+        let rational = WideInterval::from_rational(&self.rational, precision);
+        if self.pi_multiple.is_zero() {
+            return rational;
+        }
+        let multiple = WideInterval::from_rational(&self.pi_multiple, precision);
+        rational.add(&multiple.mul(&WideInterval::pi(precision)))
     }
 
     /// A double near the point, to steer a search with.
