@@ -26,7 +26,7 @@ proptest! {
         start in -4.0f64..4.0,
         width in prop_oneof![Just(0.0), 0.0f64..4.0, 0.0f64..1e-6],
         share in prop_oneof![Just(0.0), Just(1.0), 0.0f64..1.0],
-        precision in prop::sample::select(vec![53u32, 64, 200]),
+        precision in prop::sample::select(vec![8u32, 53, 64, 200]),
     ) {
         let formula = formula(&text);
         let over = interval(start, start + width).with_precision(precision);

@@ -93,7 +93,7 @@ fn number() -> impl Strategy<Value = f64> {
 }
 
 fn any_interval() -> impl Strategy<Value = WideInterval> {
-    let precision = prop::sample::select(vec![53u32, 64, 200]);
+    let precision = prop::sample::select(vec![8u32, 53, 64, 200]);
     let narrow = (number(), 0.0f64..1.0, -50i32..2).prop_map(|(x, w, e)| (x, x + w * 2f64.powi(e)));
     let ends = prop_oneof![(number(), number()), narrow];
     (ends, precision).prop_map(|((a, b), precision)| interval(a, b).with_precision(precision))

@@ -110,9 +110,12 @@ fn enclosures_hold_independent_values() {
     for (function, _, name, rows) in rows() {
         let mut evaluated = 0;
         for row in &rows {
-            for precision in [53, 64, 90] {
-                let exact = function(&square(&row.point, 0.0, precision));
-                let exact = exact.unwrap_or_else(|| panic!("{name} {:?}", row.point));
+            // The points have no more than 7 bits; at so few a wrong direction of rounding shows.
+            for precision in [7, 8, 11, 53, 64, 90] {
+                let Some(exact) = function(&square(&row.point, 0.0, precision)) else {
+                    assert!(precision < 53, "{name} {:?}", row.point);
+                    continue;
+                };
                 assert!(
                     holds(&exact, &row.value),
                     "{name} {:?} {exact:?}",
