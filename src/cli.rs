@@ -33,7 +33,10 @@ pub fn run(arguments: &arguments::Arguments) -> u8 {
 /// The exit code of some certificates.
 pub fn exit_code<'a>(certificates: impl IntoIterator<Item = &'a Certificate>) -> u8 {
     let mut code = ALL_HOLD;
-    for claim in certificates.into_iter().flat_map(|certificate| &certificate.claims) {
+    for claim in certificates
+        .into_iter()
+        .flat_map(|certificate| &certificate.claims)
+    {
         match claim.verdict {
             Verdict::Fails => return A_CLAIM_FAILS,
             Verdict::Undecided => code = UNDECIDED,

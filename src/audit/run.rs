@@ -7,11 +7,10 @@ use rayon::prelude::*;
 
 use crate::approximant::piece::{Approximant, Owner};
 use crate::audit::file::AuditFile;
-use crate::bound::measure::Measure;
 use crate::bound::search::Undefined;
 use crate::claim::domain::{End, Part, intersection};
 use crate::claim::evaluation::{Effort, PieceOutcome, Summary, evaluate, summary};
-use crate::claim::model::{Claim, ErrorMeasure, Target};
+use crate::claim::model::{Claim, Target};
 use crate::function::constant::Constant;
 
 /// Default tightness of an enclosure: upper/lower - 1.
@@ -87,7 +86,9 @@ pub fn run(
             let first = units.len();
             plan(file, claim, target, &on, &mut units)?;
             if units.len() == first {
-                return Err(AuditError::EmptySet { claim: claim.id.clone() });
+                return Err(AuditError::EmptySet {
+                    claim: claim.id.clone(),
+                });
             }
             let on = on.into_iter().map(|(ends, _)| ends).collect();
             outcomes.push((claim_index, target.approximant, on, first..units.len()));
@@ -110,24 +111,33 @@ pub fn run(
     outcomes
         .into_iter()
         .map(|(claim, approximant, on, range)| {
-            let pieces = results.by_ref().take(range.len()).collect::<Result<Vec<_>, _>>()?;
-            let bound = file.claims[claim].at_most.as_ref().map(|bound| &bound.value);
+            let pieces = results
+                .by_ref()
+                .take(range.len())
+                .collect::<Result<Vec<_>, _>>()?;
+            let bound = file.claims[claim]
+                .at_most
+                .as_ref()
+                .map(|bound| &bound.value);
             let summary = summary(&pieces, bound);
-            let pieces = units[range].iter().map(|unit| unit.piece).zip(pieces).collect();
-            Ok(ClaimOutcome { claim, approximant, on, pieces, summary })
+            let pieces = units[range]
+                .iter()
+                .map(|unit| unit.piece)
+                .zip(pieces)
+                .collect();
+            Ok(ClaimOutcome {
+                claim,
+                approximant,
+                on,
+                pieces,
+                summary,
+            })
         })
         .collect()
 }
 
 fn carry_out(file: &AuditFile, unit: &Unit, effort: &Effort) -> Result<PieceOutcome, AuditError> {
-    let measure = match &unit.claim.measure {
-        ErrorMeasure::Absolute => Measure::Absolute,
-        ErrorMeasure::Relative => Measure::Relative,
-        ErrorMeasure::Mixed { absolute_part, relative_part } => Measure::Mixed {
-            absolute: absolute_part.clone(),
-            relative: relative_part.clone(),
-        },
-    };
+    let measure = unit.claim.measure.bound_measure();
     evaluate(
         file.reference_of(unit.approximant_index),
         &unit.approximant.pieces[unit.piece],
@@ -150,7 +160,11 @@ type Interval = ([Constant; 2], [End; 2]);
 /// supremum over a set and over its closure are the same for a continuous error.)
 fn set_of(target: &Target) -> Result<Vec<Interval>, AuditError> {
     let both = |ends: &[Constant; 2]| Ok::<_, AuditError>((ends.clone(), enclosed(ends)?));
-    let mut except = target.except.iter().map(both).collect::<Result<Vec<_>, _>>()?;
+    let mut except = target
+        .except
+        .iter()
+        .map(both)
+        .collect::<Result<Vec<_>, _>>()?;
     except.sort_by(|(_, a), (_, b)| a[0].low.cmp(&b[0].low));
     let (on, ends) = both(&target.on)?;
     if except.is_empty() {
@@ -176,7 +190,9 @@ fn set_of(target: &Target) -> Result<Vec<Interval>, AuditError> {
 
 fn enclosed(ends: &[Constant; 2]) -> Result<[End; 2], AuditError> {
     let end = |constant: &Constant| {
-        End::new(constant).ok_or_else(|| AuditError::End { text: constant.text().to_owned() })
+        End::new(constant).ok_or_else(|| AuditError::End {
+            text: constant.text().to_owned(),
+        })
     };
     Ok([end(&ends[0])?, end(&ends[1])?])
 }
@@ -196,7 +212,7 @@ fn plan<'a>(
             Owner::Right => [true, index + 1 == count],
             Owner::Left => [index == 0, true],
         };
-        let parts: Vec<Part> = intervals
+        let parts: Vec<Part> = on
             .iter()
             .filter_map(|(_, [left, right])| {
                 intersection([&ends[0], &ends[1]], owned, [left, right])

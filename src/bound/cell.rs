@@ -26,6 +26,8 @@ pub struct Cell {
     pub depth: u32,
     /// Expansion point, where it is prescribed.
     pub anchor: Option<Anchor>,
+    /// A zero of the reference was sought in or beside the cell, and none was found.
+    pub sought: bool,
 }
 
 /// Bits of a patch radius.
@@ -34,7 +36,12 @@ const RADIUS_BITS: u32 = 24;
 impl Cell {
     /// The whole of a piece.
     pub fn whole(ends: [Rational; 2]) -> Self {
-        Self { ends, depth: 0, anchor: None }
+        Self {
+            ends,
+            depth: 0,
+            anchor: None,
+            sought: false,
+        }
     }
 
     /// A short number near the middle.
@@ -56,10 +63,17 @@ impl Cell {
         };
         let radius = self.radius_around(&centre);
         let t = |x: &Rational, round| local(&centre, &radius, x, round);
-        let outer = [t(&self.ends[0], Round::Down).max(-1.0), t(&self.ends[1], Round::Up).min(1.0)];
+        let outer = [
+            t(&self.ends[0], Round::Down).max(-1.0),
+            t(&self.ends[1], Round::Up).min(1.0),
+        ];
         // Ends of the cell that lie inside the set are of the set.
         let inside = |k: usize| {
-            if k == 0 { self.ends[0] > inner[0] } else { self.ends[1] < inner[1] }
+            if k == 0 {
+                self.ends[0] > inner[0]
+            } else {
+                self.ends[1] < inner[1]
+            }
         };
         let left = if inside(0) { &self.ends[0] } else { &inner[0] };
         let right = if inside(1) { &self.ends[1] } else { &inner[1] };
@@ -74,12 +88,20 @@ impl Cell {
         // A cell may hold no representable argument of the set (it covers the end of an
         // irrational domain, say): then it gives upper bounds only.
         let inner = (range[0] <= range[1]).then_some(range);
-        Frame { centre, radius, outer, inner, shared_zero }
+        Frame {
+            centre,
+            radius,
+            outer,
+            inner,
+            seek_zero: !self.sought && shared_zero == 0,
+            shared_zero,
+        }
     }
 
     fn radius_around(&self, centre: &Centre) -> Float {
         let distance = |x: &Rational| {
-            let difference = WideInterval::from_rationals(x, x, 128).sub(&centre.wide_interval(128));
+            let difference =
+                WideInterval::from_rationals(x, x, 128).sub(&centre.wide_interval(128));
             Float::with_val_round(RADIUS_BITS, difference.magnitude(), Round::Up).0
         };
         let radius = distance(&self.ends[0]).max(&distance(&self.ends[1]));
@@ -94,7 +116,10 @@ impl Cell {
     pub fn argument(&self, centre: &Centre, t: f64) -> Centre {
         let radius = self.radius_around(centre).to_rational().unwrap_or_default();
         let step = Rational::from_f64(t).unwrap_or_default() * radius;
-        Centre { rational: (&centre.rational + step).complete(), pi_multiple: centre.pi_multiple.clone() }
+        Centre {
+            rational: Rational::from(&centre.rational + step),
+            pi_multiple: centre.pi_multiple.clone(),
+        }
     }
 
     /// Two halves; an anchored cell becomes an anchored middle and what is beside it.
@@ -105,22 +130,39 @@ impl Cell {
                 let middle = self.middle();
                 let [left, right] = self.ends;
                 vec![
-                    Cell { ends: [left, middle.clone()], depth, anchor: None },
-                    Cell { ends: [middle, right], depth, anchor: None },
+                    Cell {
+                        ends: [left, middle.clone()],
+                        depth,
+                        anchor: None,
+                        sought: false,
+                    },
+                    Cell {
+                        ends: [middle, right],
+                        depth,
+                        anchor: None,
+                        sought: false,
+                    },
                 ]
             }
             Some(anchor) => {
-                let half = self.radius_around(&anchor.centre).to_rational().unwrap_or_default() / 2u32;
+                let half = self
+                    .radius_around(&anchor.centre)
+                    .to_rational()
+                    .unwrap_or_default()
+                    / 2u32;
                 let anchor = anchor.clone();
                 self.around(&anchor, &half, depth)
             }
         }
     }
 
-    /// The cell with a prescribed expansion point, which lies in it.
+    /// The cell with a prescribed expansion point, which lies in it or not far beside it.
     pub fn anchored(self, anchor: Anchor) -> Vec<Cell> {
         let depth = self.depth + 1;
-        let radius = self.radius_around(&anchor.centre).to_rational().unwrap_or_default();
+        let radius = self
+            .radius_around(&anchor.centre)
+            .to_rational()
+            .unwrap_or_default();
         self.around(&anchor, &radius, depth)
     }
 
@@ -128,17 +170,45 @@ impl Cell {
     fn around(self, anchor: &Anchor, radius: &Rational, depth: u32) -> Vec<Cell> {
         let place = anchor.centre.wide_interval(128);
         let place = place.midpoint().to_rational().unwrap_or_default();
+        if (&place - radius).complete() >= self.ends[1]
+            || (&place + radius).complete() <= self.ends[0]
+        {
+            // The anchor lies beside the cell and its neighbourhood has shrunk away from it.
+            return Cell {
+                anchor: None,
+                ..self
+            }
+            .parts();
+        }
         let [left, right] = self.ends;
         let inner_left = (&place - radius).complete().max(left.clone());
         let inner_right = (&place + radius).complete().min(right.clone());
         let mut cells = Vec::with_capacity(3);
         if inner_left > left {
-            cells.push(Cell { ends: [left, inner_left.clone()], depth, anchor: None });
+            cells.push(Cell {
+                ends: [left, inner_left.clone()],
+                depth,
+                anchor: None,
+                sought: false,
+            });
         }
         if inner_right < right {
-            cells.push(Cell { ends: [inner_right.clone(), right], depth, anchor: None });
+            cells.push(Cell {
+                ends: [inner_right.clone(), right],
+                depth,
+                anchor: None,
+                sought: false,
+            });
         }
-        cells.insert(0, Cell { ends: [inner_left, inner_right], depth, anchor: Some(anchor.clone()) });
+        cells.insert(
+            0,
+            Cell {
+                ends: [inner_left, inner_right],
+                depth,
+                anchor: Some(anchor.clone()),
+                sought: false,
+            },
+        );
         cells
     }
 }

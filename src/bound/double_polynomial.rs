@@ -5,7 +5,7 @@
 //! digits would underflow otherwise). After that, 53 bits are plenty.
 
 use inari::Interval;
-use rug::{Complete, Float};
+use rug::Float;
 use rug::float::Round;
 
 use crate::number::ball::Ball;
@@ -54,7 +54,10 @@ pub fn outward(ball: &Ball, exponent: i64) -> Interval {
     if !ball.is_finite() {
         return Interval::ENTIRE;
     }
-    interval(bound(ball.lower(), Round::Down), bound(ball.upper(), Round::Up))
+    interval(
+        bound(ball.lower(), Round::Down),
+        bound(ball.upper(), Round::Up),
+    )
 }
 
 impl DoublePolynomial {
@@ -67,7 +70,10 @@ impl DoublePolynomial {
             // k (k-1) is exact in a double for every k that fits in memory.
             .map(|(k, &c)| c * singleton((k * (k - 1)) as f64))
             .collect();
-        Self { coefficients, second }
+        Self {
+            coefficients,
+            second,
+        }
     }
 
     /// Drops balls to doubles after scaling by 2^-exponent.
@@ -100,12 +106,19 @@ impl DoublePolynomial {
     /// The second-order enclosure on `over` around `m`.
     pub fn second_order(&self, m: f64, over: Interval) -> SecondOrder {
         let (value, slope) = self.value_and_slope(m);
-        SecondOrder { value, slope, curvature: horner(&self.second, over) }
+        SecondOrder {
+            value,
+            slope,
+            curvature: horner(&self.second, over),
+        }
     }
 }
 
 fn horner(coefficients: &[Interval], at: Interval) -> Interval {
-    coefficients.iter().rev().fold(singleton(0.0), |sum, &c| sum * at + c)
+    coefficients
+        .iter()
+        .rev()
+        .fold(singleton(0.0), |sum, &c| sum * at + c)
 }
 
 impl SecondOrder {
@@ -135,14 +148,17 @@ impl SecondOrder {
         let slope = (self.slope - value * divisor.slope) / divisor.value;
         let value_over = self.over(offset) / divisor_over;
         let divisor_slope_over = divisor.slope_over(offset);
-        let slope_over =
-            (self.slope_over(offset) - value_over * divisor_slope_over) / divisor_over;
+        let slope_over = (self.slope_over(offset) - value_over * divisor_slope_over) / divisor_over;
         let two = singleton(2.0);
         let curvature = (self.curvature
             - two * slope_over * divisor_slope_over
             - value_over * divisor.curvature)
             / divisor_over;
-        Some(SecondOrder { value, slope, curvature })
+        Some(SecondOrder {
+            value,
+            slope,
+            curvature,
+        })
     }
 
     /// Lower and upper bound of g over J = m + [-r, r].
@@ -169,7 +185,9 @@ fn rise(s: f64, c: f64, r: f64) -> f64 {
     let steepness = -c;
     if multiply_up(steepness, r) <= s {
         let square = (r * r).next_down().max(0.0);
-        let drop = ((steepness * square).next_down() * 0.5).next_down().max(0.0);
+        let drop = ((steepness * square).next_down() * 0.5)
+            .next_down()
+            .max(0.0);
         add_up(linear, -drop)
     } else {
         let vertex = (multiply_up(s, s) / (2.0 * steepness)).next_up();
@@ -179,25 +197,37 @@ fn rise(s: f64, c: f64, r: f64) -> f64 {
 
 fn add_up(a: f64, b: f64) -> f64 {
     let sum = a + b;
-    if sum.is_nan() { f64::INFINITY } else { sum.next_up() }
+    if sum.is_nan() {
+        f64::INFINITY
+    } else {
+        sum.next_up()
+    }
 }
 
 fn add_down(a: f64, b: f64) -> f64 {
     let sum = a + b;
-    if sum.is_nan() { f64::NEG_INFINITY } else { sum.next_down() }
+    if sum.is_nan() {
+        f64::NEG_INFINITY
+    } else {
+        sum.next_down()
+    }
 }
 
 /// Upper bound of a product of non-negative numbers (0 * infinity counts as infinity).
 fn multiply_up(a: f64, b: f64) -> f64 {
     let product = a * b;
-    if product.is_nan() { f64::INFINITY } else { product.next_up() }
+    if product.is_nan() {
+        f64::INFINITY
+    } else {
+        product.next_up()
+    }
 }
 
 #[cfg(test)]
 mod tests {
     use super::*;
     use proptest::prelude::*;
-    use rug::Rational;
+    use rug::{Complete, Rational};
 
     fn rational(x: f64) -> Rational {
         Rational::from_f64(x).unwrap()

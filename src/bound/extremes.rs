@@ -122,7 +122,11 @@ impl Target {
                 let divisor = polynomial.second_order(m, over);
                 self.quotient(&numerator, &divisor, *tail, offset)
             }
-            Divisor::Mixed { absolute, scaled, tail } => {
+            Divisor::Mixed {
+                absolute,
+                scaled,
+                tail,
+            } => {
                 let scaled = scaled.second_order(m, over);
                 let range = scaled.over(offset) + symmetric(*tail);
                 let signed = if range.inf() > 0.0 {
@@ -137,7 +141,10 @@ impl Target {
                     None
                 };
                 if let Some(signed) = signed {
-                    let weight = SecondOrder { value: signed.value + *absolute, ..signed };
+                    let weight = SecondOrder {
+                        value: signed.value + *absolute,
+                        ..signed
+                    };
                     return self.quotient(&numerator, &weight, *tail, offset);
                 }
                 let spread = symmetric(self.tail);
@@ -155,7 +162,8 @@ impl Target {
 
     /// Encloses the error at the point t, without tails where they are not set yet.
     pub fn value(&self, t: f64) -> Option<Interval> {
-        self.bounds(t, singleton(t)).map(|bounds| bounds.at_midpoint)
+        self.bounds(t, singleton(t))
+            .map(|bounds| bounds.at_midpoint)
     }
 
     /// The divisor at t without its tail (steers only); `None` where there is no divisor.
@@ -164,7 +172,9 @@ impl Target {
         match &self.divisor {
             Divisor::One => None,
             Divisor::Reference { polynomial, .. } => Some(polynomial.value(at)),
-            Divisor::Mixed { absolute, scaled, .. } => Some(*absolute + scaled.value(at).abs()),
+            Divisor::Mixed {
+                absolute, scaled, ..
+            } => Some(*absolute + scaled.value(at).abs()),
         }
     }
 
@@ -237,7 +247,9 @@ pub fn extremes(target: &Target, region: &Region) -> Result<Extremes, NoExtremes
         minimum_at: start,
     };
     for k in 0..=samples {
-        let Some([first, last]) = region.inner else { break };
+        let Some([first, last]) = region.inner else {
+            break;
+        };
         let share = k as f64 / samples as f64;
         let t = (first * (1.0 - share) + last * share).clamp(first, last);
         if let Some(bounds) = target.bounds(t, singleton(t)) {
@@ -246,8 +258,16 @@ pub fn extremes(target: &Target, region: &Region) -> Result<Extremes, NoExtremes
     }
 
     let mut result = Extremes {
-        minimum: Extreme { lower: f64::INFINITY, upper: f64::INFINITY, at: 0.0 },
-        maximum: Extreme { lower: f64::NEG_INFINITY, upper: f64::NEG_INFINITY, at: 0.0 },
+        minimum: Extreme {
+            lower: f64::INFINITY,
+            upper: f64::INFINITY,
+            at: 0.0,
+        },
+        maximum: Extreme {
+            lower: f64::NEG_INFINITY,
+            upper: f64::NEG_INFINITY,
+            at: 0.0,
+        },
         work: samples as u64,
     };
     let mut open = initial_mesh(start, end, samples / 4 + 1);
@@ -259,7 +279,10 @@ pub fn extremes(target: &Target, region: &Region) -> Result<Extremes, NoExtremes
         let m = (left * 0.5 + right * 0.5).clamp(left, right);
         let bounds = target.bounds(m, interval(left, right));
         if let Some(bounds) = &bounds {
-            if region.inner.is_some_and(|[first, last]| m >= first && m <= last) {
+            if region
+                .inner
+                .is_some_and(|[first, last]| m >= first && m <= last)
+            {
                 best.see(m, bounds.at_midpoint);
             }
             let allowance = 0.5 * region.tightness * best.modulus().max(region.known);
@@ -299,7 +322,11 @@ fn initial_mesh(start: f64, end: f64, parts: usize) -> Vec<(f64, f64)> {
     let mut right = end;
     for k in (0..parts).rev() {
         let share = k as f64 / parts as f64;
-        let left = if k == 0 { start } else { (start + (end - start) * share).clamp(start, right) };
+        let left = if k == 0 {
+            start
+        } else {
+            (start + (end - start) * share).clamp(start, right)
+        };
         mesh.push((left, right));
         right = left;
     }

@@ -1,11 +1,11 @@
 //! The error on a cell as a polynomial in t plus a proved tail.
 
-use rug::{Complete, Float, Rational};
 use rug::float::Round;
+use rug::{Complete, Float, Rational};
 
 use crate::approximant::piece::Form;
-use crate::bound::double_polynomial::{DoublePolynomial, outward, singleton};
-use crate::bound::extremes::{Divisor, Region, Target, extremes, Extremes, NoExtremes};
+use crate::bound::double_polynomial::{DoublePolynomial, outward};
+use crate::bound::extremes::{Divisor, Extremes, NoExtremes, Region, Target, extremes};
 use crate::bound::measure::Measure;
 use crate::bound::point::Subject;
 use crate::bound::remainder::{Disc, NoDisc, disc_for};
@@ -29,6 +29,8 @@ pub struct Frame {
     pub outer: [f64; 2],
     /// Only t of the cell that belong to the set; `None` if no double is one.
     pub inner: Option<[f64; 2]>,
+    /// Whether a reference that becomes small somewhere is worth a search for a zero beside the cell.
+    pub seek_zero: bool,
     /// Order of the zero that reference and approximant share at the centre, which is divided
     /// out of both (relative errors only; proved by the caller).
     pub shared_zero: usize,
@@ -124,6 +126,10 @@ impl Part {
 /// Most bits a series is computed with.
 pub const MOST_PRECISION: u32 = 8192;
 
+/// A reference that falls below this share of its largest value on the cell may have a zero beside
+/// it, around which the relative error is better expanded.
+const SMALL_REFERENCE: f64 = 1.0 / 64.0;
+
 /// Truncated series of both functions on a frame.
 struct Expansion {
     reference: Vec<Ball>,
@@ -158,21 +164,42 @@ pub fn patch(subject: &Subject, frame: &Frame, wish: &Wish) -> Result<Patch, NoP
             }
         };
         let target = goal.tail_log2;
-        let disc = of_part(Part::Reference, disc_for(
-            subject.reference, &frame.centre, &frame.radius, &expansion.reference, target, &mut work,
-        ))?;
+        let disc = of_part(
+            Part::Reference,
+            disc_for(
+                subject.reference,
+                &frame.centre,
+                &frame.radius,
+                &expansion.reference,
+                target,
+                &mut work,
+            ),
+        )?;
         let second = match (subject.form, &expansion.approximant) {
-            (Form::Formula(formula), Some(coefficients)) => Some(of_part(Part::Approximant, disc_for(
-                formula, &frame.centre, &frame.radius, coefficients, target, &mut work,
-            ))?),
+            (Form::Formula(formula), Some(coefficients)) => Some(of_part(
+                Part::Approximant,
+                disc_for(
+                    formula,
+                    &frame.centre,
+                    &frame.radius,
+                    coefficients,
+                    target,
+                    &mut work,
+                ),
+            )?),
             _ => None,
         };
         let reference_tail = disc.tail(terms);
-        let approximant_tail = second.as_ref().map_or(Radius::ZERO, |disc| disc.tail(terms));
+        let approximant_tail = second
+            .as_ref()
+            .map_or(Radius::ZERO, |disc| disc.tail(terms));
         let tail = reference_tail.add(approximant_tail);
         if steering::log2_of(&tail.to_float_upper(53)) > target {
             let slower = second.iter().chain([&disc]);
-            let wanted = slower.map(|disc| disc.terms_for(target - 1.0)).max().unwrap_or(terms);
+            let wanted = slower
+                .map(|disc| disc.terms_for(target - 1.0))
+                .max()
+                .unwrap_or(terms);
             let wanted = wanted.max(terms + 2);
             if wanted > most_terms(subject.form, &disc) + frame.shared_zero {
                 return Err(NoPatch::TooWide);
@@ -257,7 +284,10 @@ fn expand(
     let (approximant, polynomial) = match subject.form {
         Form::Polynomial(polynomial) => {
             *work += square * words;
-            (None, shifted(polynomial, &frame.centre, &frame.radius, precision))
+            (
+                None,
+                shifted(polynomial, &frame.centre, &frame.radius, precision),
+            )
         }
         Form::Formula(formula) => {
             *work += square * words * formula.operations().len() as u64;
@@ -274,7 +304,11 @@ fn expand(
             p.sub(f)
         })
         .collect();
-    Ok(Expansion { reference, difference, approximant })
+    Ok(Expansion {
+        reference,
+        difference,
+        approximant,
+    })
 }
 
 /// The target of the range step, in doubles.
@@ -313,7 +347,13 @@ impl Scaled {
             Measure::Relative => {
                 let exponent = exponent_of(reference);
                 let polynomial = DoublePolynomial::from_balls(reference, exponent);
-                (Divisor::Reference { polynomial, tail: 0.0 }, exponent)
+                (
+                    Divisor::Reference {
+                        polynomial,
+                        tail: 0.0,
+                    },
+                    exponent,
+                )
             }
             Measure::Mixed { absolute, relative } => {
                 let precision = 64;
@@ -331,7 +371,11 @@ impl Scaled {
             }
         };
         Self {
-            target: Target { numerator, tail: 0.0, divisor },
+            target: Target {
+                numerator,
+                tail: 0.0,
+                divisor,
+            },
             exponent: numerator_exponent - divisor_exponent,
             numerator_exponent,
             divisor_exponent,
@@ -347,7 +391,7 @@ impl Scaled {
         };
         let floor = in_units(&wish.floor);
         let (mut reached, mut width, mut weight) = (in_units(&wish.known), 0.0f64, f64::INFINITY);
-        let mut seen_sign = None;
+        let (mut seen_sign, mut heaviest, mut lightest_at) = (None, 0.0f64, 0.0);
         const SAMPLES: u32 = 12;
         for k in 0..=SAMPLES {
             let share = f64::from(k) / f64::from(SAMPLES);
@@ -358,13 +402,25 @@ impl Scaled {
                 width = width.max(value.wid());
             }
             if let Some(size) = self.target.weight(t) {
-                let sign = if size.inf() > 0.0 { 1 } else if size.sup() < 0.0 { -1 } else { 0 };
+                heaviest = heaviest.max(size.mag());
+                let sign = if size.inf() > 0.0 {
+                    1
+                } else if size.sup() < 0.0 {
+                    -1
+                } else {
+                    0
+                };
                 if sign == 0 || seen_sign.is_some_and(|seen| seen != sign) {
                     return Goal::MayVanish(t);
                 }
                 seen_sign = Some(sign);
-                weight = weight.min(size.mag());
+                if size.mag() < weight {
+                    (weight, lightest_at) = (size.mag(), t);
+                }
             }
+        }
+        if frame.seek_zero && weight < heaviest * SMALL_REFERENCE {
+            return Goal::MayVanish(lightest_at);
         }
         let goal = reached.max(floor) * wish.tightness / 8.0;
         if width > goal {
@@ -401,12 +457,19 @@ impl Scaled {
 
 /// Upper bound of `radius` * 2^-exponent in doubles.
 fn in_doubles(radius: Radius, exponent: i64) -> f64 {
-    radius.mul_power_of_two(-exponent).to_float_upper(53).to_f64_round(Round::Up)
+    radius
+        .mul_power_of_two(-exponent)
+        .to_float_upper(53)
+        .to_f64_round(Round::Up)
 }
 
 /// An exponent that brings the largest of the balls near 1.
 fn exponent_of(balls: &[Ball]) -> i64 {
-    let largest = balls.iter().map(Ball::magnitude_upper).max().unwrap_or(Radius::ZERO);
+    let largest = balls
+        .iter()
+        .map(Ball::magnitude_upper)
+        .max()
+        .unwrap_or(Radius::ZERO);
     let log2 = steering::log2_of(&largest.to_float_upper(53));
     // Zero and infinite balls have no scale of their own.
     if log2.abs() < 1e15 { log2 as i64 } else { 0 }

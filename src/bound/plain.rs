@@ -50,7 +50,11 @@ pub fn range_of_form(form: &Form, over: &WideInterval) -> Result<WideInterval, R
     let precision = over.precision();
     let origin = polynomial.origin.wide_interval(precision);
     let scale = polynomial.scale.wide_interval(precision);
-    let refusal = Refusal { node: 0, kind: RefusalKind::Unbounded, proved: false };
+    let refusal = Refusal {
+        node: 0,
+        kind: RefusalKind::Unbounded,
+        proved: false,
+    };
     let u = over.sub(&origin).div(&scale).ok_or(refusal)?;
     let mut sum = WideInterval::zero(precision);
     for c in polynomial.coefficients.iter().rev() {

@@ -70,7 +70,10 @@ pub fn values_at(
         })?,
         Measure::Mixed { absolute, relative } => {
             let mut weight = Ball::from_rational(absolute, precision);
-            weight.add_product(&Ball::from_rational(relative, precision), &absolute_value(&reference));
+            weight.add_product(
+                &Ball::from_rational(relative, precision),
+                &absolute_value(&reference),
+            );
             difference.div(&weight).ok_or(Refusal {
                 node: subject.reference.root(),
                 kind: RefusalKind::Unbounded,
@@ -78,7 +81,11 @@ pub fn values_at(
             })?
         }
     };
-    Ok(PointValues { approximant, reference, error })
+    Ok(PointValues {
+        approximant,
+        reference,
+        error,
+    })
 }
 
 /// As [`values_at`], with the precision raised from `start` until the error is known to about 40

@@ -18,6 +18,7 @@
 
 use rug::Float;
 use rug::float::Round;
+use rug::ops::DivAssignRound;
 
 use crate::bound::steering;
 use crate::function::disc::magnitude_on_disc;
@@ -66,7 +67,9 @@ impl Disc {
         let power = Radius::of_float_upper(&inverse).pow(exponent);
         let mut inverse_gap = Float::with_val(precision, 1);
         inverse_gap.div_assign_round(&gap, Round::Up);
-        self.magnitude.mul(power).mul(Radius::of_float_upper(&inverse_gap))
+        self.magnitude
+            .mul(power)
+            .mul(Radius::of_float_upper(&inverse_gap))
     }
 
     /// About how many terms bring the tail down to 2^`target`.
@@ -95,15 +98,26 @@ pub fn disc_for(
 ) -> Result<Disc, NoDisc> {
     let start = promising_log2_rho(coefficients);
     let mut refused = NoDisc::TooSlow;
-    for inset in [0.15, 0.45, 0.9, 1.5] {
+    // A removable singularity beside the cell does not show in the coefficients, but no disc may
+    // contain it: the insets grow until the disc is hardly larger than the cell.
+    let mut inset = 0.15;
+    while start - inset >= SMALLEST_LOG2_RHO {
         let log2_rho = (start - inset).min(LARGEST_LOG2_RHO);
-        if log2_rho < SMALLEST_LOG2_RHO {
-            break;
-        }
         match try_disc(formula, centre, scale, log2_rho, work) {
-            Ok(disc) => return Ok(widened(formula, centre, scale, disc, coefficients.len(), target, work)),
+            Ok(disc) => {
+                return Ok(widened(
+                    formula,
+                    centre,
+                    scale,
+                    disc,
+                    coefficients.len(),
+                    target,
+                    work,
+                ));
+            }
             Err(refusal) => refused = NoDisc::Refused(refusal),
         }
+        inset = 1.5 * inset + 0.3;
     }
     Err(refused)
 }
@@ -156,7 +170,12 @@ fn promising_log2_rho(coefficients: &[Ball]) -> f64 {
         .iter()
         .enumerate()
         .filter(|(_, c)| !c.is_exact_zero())
-        .map(|(k, c)| (k as f64, steering::log2_of(&c.magnitude_upper().to_float_upper(53))))
+        .map(|(k, c)| {
+            (
+                k as f64,
+                steering::log2_of(&c.magnitude_upper().to_float_upper(53)),
+            )
+        })
         .collect();
     let limit = 0.7 * coefficients.len() as f64;
     let dominated_early = |log2_rho: f64| {

@@ -40,7 +40,11 @@ pub enum Unfinished {
     /// The budget of work ran out.
     Budget,
     /// A function could not be shown to be defined, or continuous, near `at`.
-    Refused { at: Rational, refusal: Refusal, part: Part },
+    Refused {
+        at: Rational,
+        refusal: Refusal,
+        part: Part,
+    },
     /// The reference vanishes near `at`, and the approximant is not proved to share the zero.
     ZeroOfReference { at: Rational },
     /// The most bits allowed do not resolve the error near `at`.
@@ -216,15 +220,26 @@ impl<'a> Search<'a> {
             let place = cell.argument(centre, t);
             (place, if t == 0.0 { shared_zero } else { 0 })
         };
-        let (low, high) = (scaled(extremes.minimum.lower), scaled(extremes.maximum.upper));
+        let (low, high) = (
+            scaled(extremes.minimum.lower),
+            scaled(extremes.maximum.upper),
+        );
         let top = Float::with_val(53, high.clone().abs().max(&low.clone().abs()));
         if self.result.remainder.is_none() || top > self.largest {
             self.largest = top;
             self.result.remainder = Some(found.remainder.clone());
         }
         self.cover(low, high);
-        self.reach(scaled(extremes.maximum.lower), || at(extremes.maximum.at), true);
-        self.reach(scaled(extremes.minimum.upper), || at(extremes.minimum.at), false);
+        self.reach(
+            scaled(extremes.maximum.lower),
+            || at(extremes.maximum.at),
+            true,
+        );
+        self.reach(
+            scaled(extremes.minimum.upper),
+            || at(extremes.minimum.at),
+            false,
+        );
     }
 
     /// Every signed error of some cell lies in [low, high].
@@ -314,7 +329,10 @@ impl<'a> Search<'a> {
             && let Operation::Divide(_, denominator) = formula.operations()[refusal.node]
             && let Some(zero) = exact_zero(formula, denominator, &cell.ends[0], &cell.ends[1])
         {
-            self.queue.extend(cell.anchored(Anchor { centre: zero.centre, shared_zero: 0 }));
+            self.queue.extend(cell.anchored(Anchor {
+                centre: zero.centre,
+                shared_zero: 0,
+            }));
             return Ok(());
         }
         if cell.depth >= PLAIN_FROM && self.settled_plainly(&cell) {
@@ -372,13 +390,19 @@ impl<'a> Search<'a> {
         }
         let width = (right - left).complete();
         for k in 1..8u32 {
-            places.push((left + &width * Rational::from((k, 8u32))).complete());
+            places.push(Rational::from(
+                left + Rational::from(&width * Rational::from((k, 8u32))),
+            ));
         }
         for place in places {
             let exact = Centre::rational(place);
-            let Ok(values) =
-                precise_values_at(&self.task.subject, &exact, 0, self.wish.precision, &self.wish.floor)
-            else {
+            let Ok(values) = precise_values_at(
+                &self.task.subject,
+                &exact,
+                0,
+                self.wish.precision,
+                &self.wish.floor,
+            ) else {
                 continue;
             };
             let down = Float::with_val_round(RESULT_PRECISION, values.error.lower(), Round::Down).0;
@@ -390,7 +414,11 @@ impl<'a> Search<'a> {
 
     /// The reference may vanish in the cell (relative errors).
     fn zero_of_reference(&mut self, cell: Cell) {
-        if cell.anchor.as_ref().is_some_and(|anchor| anchor.shared_zero > 0) {
+        if cell
+            .anchor
+            .as_ref()
+            .is_some_and(|anchor| anchor.shared_zero > 0)
+        {
             self.divide(cell, Unfinished::Budget);
             return;
         }
@@ -403,6 +431,12 @@ impl<'a> Search<'a> {
                 self.reach(up, || (centre.clone(), 0), true);
                 self.cover(down, Float::with_val(RESULT_PRECISION, Special::Infinity));
                 self.queue.clear();
+            }
+            Shared::Unknown if !cell.sought => {
+                self.queue.push_front(Cell {
+                    sought: true,
+                    ..cell
+                });
             }
             Shared::Unknown if cell.depth >= 60 => {
                 let at = cell.middle();
@@ -424,10 +458,19 @@ impl<'a> Search<'a> {
             result.upper = Float::with_val(RESULT_PRECISION, Special::Infinity);
         }
         let up = result.maximum[0] >= Float::with_val(RESULT_PRECISION, -&result.minimum[1]);
-        result.at = if up { self.maximum_at.take() } else { self.minimum_at.take() };
+        result.at = if up {
+            self.maximum_at.take()
+        } else {
+            self.minimum_at.take()
+        };
         if let Some((at, zero)) = &result.at
-            && let Ok(values) =
-                precise_values_at(&self.task.subject, at, *zero, self.wish.precision, &self.wish.floor)
+            && let Ok(values) = precise_values_at(
+                &self.task.subject,
+                at,
+                *zero,
+                self.wish.precision,
+                &self.wish.floor,
+            )
         {
             let error = &values.error;
             let modulus = if error.is_positive() {
@@ -451,7 +494,10 @@ fn floor_and_precision(task: &Task) -> (Float, u32) {
     match &task.bound {
         Some(bound) if *bound > 0 => {
             let bound = Float::with_val(53, bound);
-            let bits = bound.get_exp().map_or(0, |exponent| -exponent).clamp(0, 4096);
+            let bits = bound
+                .get_exp()
+                .map_or(0, |exponent| -exponent)
+                .clamp(0, 4096);
             let precision = (bits.unsigned_abs() + 64).max(96).next_multiple_of(32);
             (bound >> 24, precision)
         }

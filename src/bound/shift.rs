@@ -3,6 +3,7 @@
 use rug::{Complete, Float};
 
 use crate::approximant::polynomial::Polynomial;
+use crate::function::constant::Constant;
 use crate::function::exact::Centre;
 use crate::number::ball::Ball;
 
@@ -12,7 +13,12 @@ use crate::number::ball::Ball;
 /// beta = h/s; the shift by alpha is Horner's repeated synthetic division (Knuth, TAOCP vol. 2,
 /// 4.6.4), n(n-1)/2 ball operations, followed by the scaling by beta^k. Cancellation in the shift
 /// shows as a larger radius, never as a wrong value.
-pub fn shifted(polynomial: &Polynomial, centre: &Centre, scale: &Float, precision: u32) -> Vec<Ball> {
+pub fn shifted(
+    polynomial: &Polynomial,
+    centre: &Centre,
+    scale: &Float,
+    precision: u32,
+) -> Vec<Ball> {
     let (alpha, beta) = local_variable(polynomial, centre, scale, precision);
     let mut coefficients: Vec<Ball> = polynomial
         .coefficients
@@ -65,13 +71,23 @@ fn local_variable(
     ) {
         let alpha = (&centre.rational - origin).complete() / width;
         let beta = step / width;
-        return (Ball::from_rational(&alpha, precision), Ball::from_rational(&beta, precision));
+        return (
+            Ball::from_rational(&alpha, precision),
+            Ball::from_rational(&beta, precision),
+        );
     }
-    let width = polynomial.scale.ball(precision);
-    let quotient = |numerator: &Ball| {
-        numerator.div(&width).unwrap_or_else(|| Ball::whole(precision))
+    let enclosed = |constant: &Constant| {
+        constant
+            .ball(precision)
+            .unwrap_or_else(|| Ball::whole(precision))
     };
-    let alpha = quotient(&centre.ball(precision).sub(&polynomial.origin.ball(precision)));
+    let width = enclosed(&polynomial.scale);
+    let quotient = |numerator: &Ball| {
+        numerator
+            .div(&width)
+            .unwrap_or_else(|| Ball::whole(precision))
+    };
+    let alpha = quotient(&centre.ball(precision).sub(&enclosed(&polynomial.origin)));
     let beta = quotient(&Ball::from_rational(&step, precision));
     (alpha, beta)
 }

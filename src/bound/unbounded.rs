@@ -40,15 +40,20 @@ pub fn around_zero(task: &Task, cell: &Cell) -> Shared {
     let form = task.subject.form;
     let [left, right] = &cell.ends;
     if let Some(zero) = exact_zero(reference, reference.root(), left, right) {
-        let Some(order) = zero.order else { return Shared::Unknown };
+        let Some(order) = zero.order else {
+            return Shared::Unknown;
+        };
         let shared = leading_zeros_of_form(form, &zero.centre);
         if shared >= order {
-            return Shared::Anchor(Anchor { centre: zero.centre, shared_zero: order });
+            return Shared::Anchor(Anchor {
+                centre: zero.centre,
+                shared_zero: order,
+            });
         }
         let lower = coefficients_of_form(form, &zero.centre, shared + 1)
             .and_then(|coefficients| coefficients.into_iter().nth(shared))
             .is_some_and(|first| !first.contains_zero());
-        if lower {
+        if lower && inside(task, &zero.centre) {
             return witness(task, &zero.centre);
         }
         return Shared::Unknown;
@@ -65,9 +70,19 @@ pub fn around_zero(task: &Task, cell: &Cell) -> Shared {
     Shared::Unknown
 }
 
+/// True if the point is proved to belong to the closure of the set.
+fn inside(task: &Task, point: &Centre) -> bool {
+    let place = point.wide_interval(1024);
+    *place.lower() >= task.inner[0] && *place.upper() <= task.inner[1]
+}
+
 /// Approaches the zero from inside the set until the error is large enough to convince.
 fn witness(task: &Task, zero: &Centre) -> Shared {
-    let place = zero.wide_interval(256).midpoint().to_rational().unwrap_or_default();
+    let place = zero
+        .wide_interval(256)
+        .midpoint()
+        .to_rational()
+        .unwrap_or_default();
     let [left, right] = &task.inner;
     let width = (right - left).complete();
     let enough = match &task.bound {
@@ -81,7 +96,9 @@ fn witness(task: &Task, zero: &Centre) -> Shared {
             if x < *left || x > *right {
                 continue;
             }
-            let Ok(values) = values_at(&task.subject, &exactly(&x), 0, 1024) else { continue };
+            let Ok(values) = values_at(&task.subject, &exactly(&x), 0, 1024) else {
+                continue;
+            };
             let error = values.error;
             let modulus = if error.is_positive() {
                 error.lower()

@@ -13,6 +13,9 @@ use crate::function::formula::{Formula, NodeId};
 use crate::function::series::series;
 use crate::number::ball::Ball;
 
+/// Zeros are sought as far beside an interval as this part of its width.
+const BESIDE: u32 = 16;
+
 /// Leading coefficients examined for a zero.
 const MOST_ORDER: usize = 8;
 
@@ -25,13 +28,28 @@ pub struct ExactZero {
     pub order: Option<usize>,
 }
 
-/// Looks in [left, right] for a zero of the value of `node` that can be proved exactly.
-pub fn exact_zero(formula: &Formula, node: NodeId, left: &Rational, right: &Rational) -> Option<ExactZero> {
+/// Looks in [left, right], and a little beside it, for a zero of the value of `node`
+/// that can be proved exactly: a kernel may begin one ulp beside its removable singularity, and a
+/// cell is then best expanded around the point that it does not contain.
+pub fn exact_zero(
+    formula: &Formula,
+    node: NodeId,
+    left: &Rational,
+    right: &Rational,
+) -> Option<ExactZero> {
     let function = formula.with_root(node);
-    candidates(&function, left, right).into_iter().find_map(|centre| {
-        let known = leading_zeros(&function, &centre);
-        (known > 0).then(|| ExactZero { order: order_at(&function, &centre, known), centre })
-    })
+    let width = (right - left).complete();
+    let margin = width / BESIDE;
+    let (left, right) = (&(left - &margin).complete(), &(right + &margin).complete());
+    candidates(&function, left, right)
+        .into_iter()
+        .find_map(|centre| {
+            let known = leading_zeros(&function, &centre);
+            (known > 0).then(|| ExactZero {
+                order: order_at(&function, &centre, known),
+                centre,
+            })
+        })
 }
 
 /// Number of leading Taylor coefficients at `centre` that are proved to be exactly zero.
@@ -47,10 +65,7 @@ pub fn leading_zeros(formula: &Formula, centre: &Centre) -> usize {
 pub fn leading_zeros_of_form(form: &Form, centre: &Centre) -> usize {
     match form {
         Form::Formula(formula) => leading_zeros(formula, centre),
-        Form::Polynomial(polynomial) => match polynomial.to_formula() {
-            Some(formula) => leading_zeros(&formula, centre),
-            None => 0,
-        },
+        Form::Polynomial(polynomial) => leading_zeros(&polynomial.to_formula(), centre),
     }
 }
 
@@ -70,7 +85,14 @@ pub fn coefficients_of_form(form: &Form, centre: &Centre, count: usize) -> Optio
 const PROBE_PRECISION: u32 = 256;
 
 fn order_at(function: &Formula, centre: &Centre, known: usize) -> Option<usize> {
-    let terms = series(function, centre, &Float::with_val(2, 1), known + 1, PROBE_PRECISION).ok()?;
+    let terms = series(
+        function,
+        centre,
+        &Float::with_val(2, 1),
+        known + 1,
+        PROBE_PRECISION,
+    )
+    .ok()?;
     let first = terms.get(known)?;
     (!first.contains_zero()).then_some(known)
 }
@@ -101,16 +123,22 @@ fn candidates(function: &Formula, left: &Rational, right: &Rational) -> Vec<Cent
 }
 
 /// Narrows a change of sign to about 100 bits; `None` where no change of sign is seen.
-pub fn bracket(function: &Formula, left: &Rational, right: &Rational) -> Option<(Rational, Rational)> {
+pub fn bracket(
+    function: &Formula,
+    left: &Rational,
+    right: &Rational,
+) -> Option<(Rational, Rational)> {
     let sign = |x: &Rational| sign_at(function, x);
     const PARTS: u32 = 16;
     let width = (right - left).complete();
-    let node = |k: u32| (left + (&width * Rational::from((k, PARTS))).complete()).complete();
+    let node = |k: u32| Rational::from(left + Rational::from(&width * Rational::from((k, PARTS))));
     let mut ends: Option<(Rational, Rational)> = None;
     let mut previous: Option<(Rational, i32)> = None;
     for k in 0..=PARTS {
         let x = node(k);
-        let Some(s) = sign(&x).filter(|&s| s != 0) else { continue };
+        let Some(s) = sign(&x).filter(|&s| s != 0) else {
+            continue;
+        };
         if let Some((before, seen)) = &previous
             && *seen != s
         {
@@ -134,9 +162,22 @@ pub fn bracket(function: &Formula, left: &Rational, right: &Rational) -> Option<
 
 /// Proved sign of the function at x, 0 if the enclosure contains zero, `None` where undefined.
 fn sign_at(function: &Formula, x: &Rational) -> Option<i32> {
-    let terms = series(function, &Centre::rational(x.clone()), &Float::with_val(2, 1), 1, PROBE_PRECISION).ok()?;
+    let terms = series(
+        function,
+        &Centre::rational(x.clone()),
+        &Float::with_val(2, 1),
+        1,
+        PROBE_PRECISION,
+    )
+    .ok()?;
     let value = terms.first()?;
-    Some(if value.is_positive() { 1 } else if value.is_negative() { -1 } else { 0 })
+    Some(if value.is_positive() {
+        1
+    } else if value.is_negative() {
+        -1
+    } else {
+        0
+    })
 }
 
 /// A point between a and b, near the middle, with few digits.
@@ -199,8 +240,14 @@ fn pi_multiple_between(low: &Rational, high: &Rational) -> Option<Centre> {
     let precision = 512;
     let pi = Ball::pi(precision);
     let quotient = |x: &Rational| Ball::from_rational(x, precision).div(&pi);
-    let (low, high) = (quotient(low)?.lower().to_rational()?, quotient(high)?.upper().to_rational()?);
+    let (low, high) = (
+        quotient(low)?.lower().to_rational()?,
+        quotient(high)?.upper().to_rational()?,
+    );
     let simplest = simplest_between(&low, &high);
     let short = *simplest.denom() <= 1000 && simplest != 0;
-    short.then(|| Centre { rational: Rational::new(), pi_multiple: simplest })
+    short.then(|| Centre {
+        rational: Rational::new(),
+        pi_multiple: simplest,
+    })
 }

@@ -4,10 +4,9 @@ use std::collections::BTreeMap;
 
 use rug::{Float, Rational};
 
-use crate::approximant::piece::{Approximant, Basis, Form, Owner, Piece, StepConstant, Stored};
+use crate::approximant::piece::{Approximant, Basis, Form, Owner, Piece, Stored};
 use crate::audit::file::AuditFile;
 use crate::audit::run::ClaimOutcome;
-use crate::bound::measure::Measure;
 use crate::bound::point::{PointValues, Subject, precise_values_at};
 use crate::bound::search::Unfinished;
 use crate::certificate::model;
@@ -16,6 +15,7 @@ use crate::claim::judgement::Verdict;
 use crate::claim::model::ErrorMeasure;
 use crate::function::constant::Constant;
 use crate::function::exact::Centre;
+use crate::function::parser::ConstantValue;
 use crate::number::ball::Ball;
 use crate::number::decimal::{ENCLOSURE_DIGITS, exact, rounded_down, rounded_up};
 use crate::number::radius::Radius;
@@ -39,7 +39,10 @@ pub fn certificate(file: &AuditFile, outcomes: &[ClaimOutcome]) -> model::Certif
             .collect(),
         subject: subject(file),
         assumptions: assumptions(file),
-        claims: outcomes.iter().map(|outcome| claim(file, outcome)).collect(),
+        claims: outcomes
+            .iter()
+            .map(|outcome| claim(file, outcome))
+            .collect(),
         pieces: pieces(file, outcomes),
     }
 }
@@ -51,14 +54,30 @@ fn made_by() -> model::MadeBy {
     use gmp_mpfr_sys::{gmp, mpfr};
     let dotted = |parts: [i64; 3]| parts.map(|part| part.to_string()).join(".");
     let libraries = [
-        ("gmp", dotted([gmp::VERSION, gmp::VERSION_MINOR, gmp::VERSION_PATCHLEVEL].map(i64::from))),
+        (
+            "gmp",
+            dotted([gmp::VERSION, gmp::VERSION_MINOR, gmp::VERSION_PATCHLEVEL].map(i64::from)),
+        ),
         ("inari", INARI_VERSION.to_owned()),
-        ("mpfr", dotted([mpfr::VERSION_MAJOR, mpfr::VERSION_MINOR, mpfr::VERSION_PATCHLEVEL].map(i64::from))),
+        (
+            "mpfr",
+            dotted(
+                [
+                    mpfr::VERSION_MAJOR,
+                    mpfr::VERSION_MINOR,
+                    mpfr::VERSION_PATCHLEVEL,
+                ]
+                .map(i64::from),
+            ),
+        ),
     ];
     model::MadeBy {
         program: "boundmark".to_owned(),
         version: env!("CARGO_PKG_VERSION").to_owned(),
-        libraries: libraries.into_iter().map(|(name, version)| (name.to_owned(), version)).collect(),
+        libraries: libraries
+            .into_iter()
+            .map(|(name, version)| (name.to_owned(), version))
+            .collect(),
     }
 }
 
@@ -85,7 +104,12 @@ fn approximant(approximant: &Approximant, reference: &str) -> model::Approximant
                 conventions.insert("parity".to_owned(), parity.name().to_owned());
             }
         }
-        Basis::Chebyshev { order, parity, first, .. } => {
+        Basis::Chebyshev {
+            order,
+            parity,
+            first,
+            ..
+        } => {
             conventions.insert("order".to_owned(), order.name().to_owned());
             conventions.insert("first".to_owned(), first.name().to_owned());
             if let Some(parity) = parity {
@@ -98,32 +122,50 @@ fn approximant(approximant: &Approximant, reference: &str) -> model::Approximant
         Basis::Hermite { scaling } => {
             conventions.insert("scaling".to_owned(), scaling.name().to_owned());
         }
-        Basis::Steps { constants, steps: lines } => {
+        Basis::Steps { constants, .. } => {
             let texts = |numbers: &[Rational]| numbers.iter().map(exact).collect::<Vec<_>>();
             steps = Some(model::Steps {
                 constants: constants
                     .iter()
                     .map(|(name, constant)| {
                         let values = match constant {
-                            StepConstant::Number(number) => model::StepConstant::Number(exact(number)),
-                            StepConstant::Array(numbers) => model::StepConstant::Array(texts(numbers)),
+                            ConstantValue::Number(number) => {
+                                model::StepConstant::Number(exact(number))
+                            }
+                            ConstantValue::Array(numbers) => {
+                                model::StepConstant::Array(texts(numbers))
+                            }
                         };
                         (name.clone(), values)
                     })
                     .collect(),
-                steps: lines.clone(),
+                steps: lines_of(approximant),
             });
         }
     }
     model::Approximant {
         id: approximant.id.clone(),
-        reference: model::Reference { formula: reference.to_owned() },
+        reference: model::Reference {
+            formula: reference.to_owned(),
+        },
         basis: approximant.basis.name().to_owned(),
         conventions,
-        stored_as: approximant.stored_as.map_or("exact", |format| format.name()).to_owned(),
+        stored_as: approximant
+            .stored_as
+            .map_or("exact", |format| format.name())
+            .to_owned(),
         owner: owner(approximant.owner).to_owned(),
         steps,
         pieces: approximant.pieces.iter().map(stored_piece).collect(),
+    }
+}
+
+/// The steps as given: the text of their formula, one to a line.
+fn lines_of(approximant: &Approximant) -> Vec<String> {
+    let form = approximant.pieces.first().map(|piece| &piece.form);
+    match form {
+        Some(Form::Formula(formula)) => formula.text().lines().map(str::to_owned).collect(),
+        _ => Vec::new(),
     }
 }
 
@@ -137,7 +179,9 @@ fn owner(owner: Owner) -> &'static str {
 fn stored_piece(piece: &Piece) -> model::StoredPiece {
     let texts = |numbers: &[Rational]| Some(numbers.iter().map(exact).collect::<Vec<_>>());
     let (origin, scale) = match &piece.form {
-        Form::Polynomial(polynomial) => (Some(end(&polynomial.origin)), Some(end(&polynomial.scale))),
+        Form::Polynomial(polynomial) => {
+            (Some(end(&polynomial.origin)), Some(end(&polynomial.scale)))
+        }
         Form::Formula(_) => (None, None),
     };
     let (coefficients, left_taylor, right_taylor) = match &piece.stored {
@@ -145,7 +189,14 @@ fn stored_piece(piece: &Piece) -> model::StoredPiece {
         Stored::Ends { left, right } => (None, texts(left), texts(right)),
         Stored::Steps => (None, None, None),
     };
-    model::StoredPiece { on: ends(&piece.on), origin, scale, coefficients, left_taylor, right_taylor }
+    model::StoredPiece {
+        on: ends(&piece.on),
+        origin,
+        scale,
+        coefficients,
+        left_taylor,
+        right_taylor,
+    }
 }
 
 fn end(constant: &Constant) -> String {
@@ -192,20 +243,26 @@ fn claim(file: &AuditFile, outcome: &ClaimOutcome) -> model::Claim {
     let claim = &file.claims[outcome.claim];
     let summary = &outcome.summary;
     let (absolute_part, relative_part) = match &claim.measure {
-        ErrorMeasure::Mixed { absolute_part, relative_part } => {
-            (Some(exact(absolute_part)), Some(exact(relative_part)))
-        }
+        ErrorMeasure::Mixed {
+            absolute_part,
+            relative_part,
+        } => (Some(exact(absolute_part)), Some(exact(relative_part))),
         _ => (None, None),
     };
     let worst = summary.worst.map(|index| &outcome.pieces[index]);
     let worst_at = worst.and_then(|(piece, result)| Some(place(result.at.as_ref()?, *piece)));
     let witness = (summary.verdict == Verdict::Fails)
-        .then(|| worst.and_then(|(piece, result)| witness(file, outcome, *piece, result.at.as_ref()?)))
+        .then(|| {
+            worst.and_then(|(piece, result)| witness(file, outcome, *piece, result.at.as_ref()?))
+        })
         .flatten();
     let reason = (summary.verdict == Verdict::Undecided).then(|| reason(outcome));
     model::Claim {
         id: claim.id.clone(),
-        approximant: file.approximants[outcome.approximant].approximant.id.clone(),
+        approximant: file.approximants[outcome.approximant]
+            .approximant
+            .id
+            .clone(),
         of: claim.subject.name().to_owned(),
         error: claim.measure.name().to_owned(),
         absolute_part,
@@ -231,7 +288,10 @@ fn notes(outcome: &ClaimOutcome) -> Vec<String> {
     let mut notes = Vec::new();
     for (_, piece) in &outcome.pieces {
         for point in &piece.by_continuity {
-            let note = format!("at x = {} the value is taken by continuity", exact_place(point));
+            let note = format!(
+                "at x = {} the value is taken by continuity",
+                exact_place(point)
+            );
             if !notes.contains(&note) {
                 notes.push(note);
             }
@@ -249,7 +309,11 @@ fn notes(outcome: &ClaimOutcome) -> Vec<String> {
 
 /// Why a claim is undecided.
 fn reason(outcome: &ClaimOutcome) -> String {
-    let Some((piece, result)) = outcome.summary.unfinished.map(|index| &outcome.pieces[index]) else {
+    let Some((piece, result)) = outcome
+        .summary
+        .unfinished
+        .map(|index| &outcome.pieces[index])
+    else {
         return "the bound lies inside the enclosure, which the arithmetic used could not narrow \
                 further; a larger --effort may decide it"
             .to_owned();
@@ -286,9 +350,14 @@ fn reason(outcome: &ClaimOutcome) -> String {
     }
 }
 
-fn witness(file: &AuditFile, outcome: &ClaimOutcome, piece: usize, at: &Place) -> Option<model::Witness> {
+fn witness(
+    file: &AuditFile,
+    outcome: &ClaimOutcome,
+    piece: usize,
+    at: &Place,
+) -> Option<model::Witness> {
     let claim = &file.claims[outcome.claim];
-    let measure = Measure::from(&claim.measure);
+    let measure = claim.measure.bound_measure();
     let subject = Subject {
         reference: file.reference_of(outcome.approximant),
         form: &file.approximants[outcome.approximant].approximant.pieces[piece].form,
@@ -296,8 +365,11 @@ fn witness(file: &AuditFile, outcome: &ClaimOutcome, piece: usize, at: &Place) -
     };
     let (centre, shared_zero) = at;
     let floor = Float::new(53);
-    let PointValues { approximant, reference, error } =
-        precise_values_at(&subject, centre, *shared_zero, 256, &floor).ok()?;
+    let PointValues {
+        approximant,
+        reference,
+        error,
+    } = precise_values_at(&subject, centre, *shared_zero, 256, &floor).ok()?;
     Some(model::Witness {
         at: place(at, piece),
         error: values(&error),
@@ -365,7 +437,10 @@ fn outward(enclosure: &[Float; 2]) -> [String; 2] {
 }
 
 fn values(ball: &Ball) -> [String; 2] {
-    [rounded_down(&ball.lower(), VALUE_DIGITS), rounded_up(&ball.upper(), VALUE_DIGITS)]
+    [
+        rounded_down(&ball.lower(), VALUE_DIGITS),
+        rounded_up(&ball.upper(), VALUE_DIGITS),
+    ]
 }
 
 fn place(at: &Place, piece: usize) -> model::Place {

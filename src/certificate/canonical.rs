@@ -22,19 +22,28 @@ pub fn bytes(certificate: &Certificate) -> Result<Vec<u8>, serde_json::Error> {
 ///
 /// Any error of the file system, with the path; the old file is then untouched.
 pub fn write(path: &Path, bytes: &[u8]) -> std::io::Result<()> {
-    let folder = path.parent().filter(|p| !p.as_os_str().is_empty()).unwrap_or(Path::new("."));
+    let folder = path
+        .parent()
+        .filter(|p| !p.as_os_str().is_empty())
+        .unwrap_or(Path::new("."));
     fs_err::create_dir_all(folder)?;
-    let mut file = tempfile::Builder::new().prefix(".boundmark-").tempfile_in(folder)?;
+    let mut file = tempfile::Builder::new()
+        .prefix(".boundmark-")
+        .tempfile_in(folder)?;
     file.write_all(bytes)?;
     file.as_file().sync_all()?;
     // A temporary file is private to its owner; a certificate is published.
     #[cfg(unix)]
     {
         use std::os::unix::fs::PermissionsExt;
-        file.as_file().set_permissions(std::fs::Permissions::from_mode(0o644))?;
+        file.as_file()
+            .set_permissions(std::fs::Permissions::from_mode(0o644))?;
     }
     file.persist(path).map_err(|error| {
-        std::io::Error::new(error.error.kind(), format!("{}: {}", path.display(), error.error))
+        std::io::Error::new(
+            error.error.kind(),
+            format!("{}: {}", path.display(), error.error),
+        )
     })?;
     Ok(())
 }

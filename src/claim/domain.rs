@@ -39,7 +39,11 @@ impl End {
             Some(x) => (x.clone(), x.clone()),
             None => constant.enclosure(END_PRECISION)?,
         };
-        Some(Self { low, high, text: constant.text().to_owned() })
+        Some(Self {
+            low,
+            high,
+            text: constant.text().to_owned(),
+        })
     }
 
     /// Proved to be the same number: equal rationals, or the same text.

@@ -71,11 +71,19 @@ pub fn evaluate(
     bound: Option<&Rational>,
     effort: &Effort,
 ) -> Result<PieceOutcome, Undefined> {
-    let run = |form: &Form, reference: &Formula, measure: &Measure, bound: Option<&Rational>, tightness| {
+    let run = |form: &Form,
+               reference: &Formula,
+               measure: &Measure,
+               bound: Option<&Rational>,
+               tightness| {
         let mut total: Option<Supremum> = None;
         for part in parts {
             let task = Task {
-                subject: Subject { reference, form, measure },
+                subject: Subject {
+                    reference,
+                    form,
+                    measure,
+                },
                 outer: part.outer.clone(),
                 inner: part.inner.clone(),
                 owned: part.owned,
@@ -99,9 +107,15 @@ pub fn evaluate(
             let change = Form::Polynomial(difference(polynomial, written));
             let zero = Formula::zero();
             let storage = run(&change, &zero, &Measure::Absolute, None, BUDGET_TIGHTNESS)?;
-            ([truncation.lower, truncation.upper], [storage.lower, storage.upper])
+            (
+                [truncation.lower, truncation.upper],
+                [storage.lower, storage.upper],
+            )
         }
-        _ => ([stored.lower.clone(), stored.upper.clone()], [Float::new(64), Float::new(64)]),
+        _ => (
+            [stored.lower.clone(), stored.upper.clone()],
+            [Float::new(64), Float::new(64)],
+        ),
     };
     Ok(PieceOutcome {
         enclosure: [stored.lower, stored.upper],
@@ -130,7 +144,10 @@ fn difference(stored: &Polynomial, written: &Polynomial) -> Polynomial {
             Rational::from(s - w)
         })
         .collect();
-    Polynomial { coefficients, ..stored.clone() }
+    Polynomial {
+        coefficients,
+        ..stored.clone()
+    }
 }
 
 /// The result on the union of two sets.
@@ -143,7 +160,12 @@ fn joined(a: Supremum, b: Supremum) -> Supremum {
         minimum: [0, 1].map(|k| smaller(&first.minimum[k], &second.minimum[k])),
         maximum: [0, 1].map(|k| larger(&first.maximum[k], &second.maximum[k])),
         unbounded: first.unbounded || second.unbounded,
-        by_continuity: first.by_continuity.iter().chain(&second.by_continuity).cloned().collect(),
+        by_continuity: first
+            .by_continuity
+            .iter()
+            .chain(&second.by_continuity)
+            .cloned()
+            .collect(),
         cells: [0, 1].map(|k| first.cells[k] + second.cells[k]),
         unfinished: first.unfinished.clone().or(second.unfinished),
         work: first.work + second.work,

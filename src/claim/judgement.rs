@@ -39,10 +39,14 @@ impl Verdict {
 /// The comparisons are exact (binary numbers against a rational). An infinite or undefined upper
 /// end never holds.
 pub fn judge(lower: &Float, upper: &Float, bound: Option<&Rational>) -> Verdict {
-    let Some(bound) = bound else { return Verdict::Measured };
+    let Some(bound) = bound else {
+        return Verdict::Measured;
+    };
     if upper.is_finite() && *upper <= *bound {
         Verdict::Holds
-    } else if lower.is_finite() && *lower > *bound || lower.is_infinite() && lower.is_sign_positive() {
+    } else if lower.is_finite() && *lower > *bound
+        || lower.is_infinite() && lower.is_sign_positive()
+    {
         Verdict::Fails
     } else {
         Verdict::Undecided
@@ -61,12 +65,21 @@ mod tests {
         // 0.1 as a double is above one tenth, so a supremum of exactly that double does not hold.
         assert_eq!(judge(&x(0.0), &x(0.1), Some(&tenth)), Verdict::Undecided);
         assert_eq!(judge(&x(0.1), &x(0.2), Some(&tenth)), Verdict::Fails);
-        assert_eq!(judge(&x(0.0), &x(0.125), Some(&Rational::from((1, 8)))), Verdict::Holds);
-        assert_eq!(judge(&x(0.125), &x(0.125), Some(&Rational::from((1, 8)))), Verdict::Holds);
+        assert_eq!(
+            judge(&x(0.0), &x(0.125), Some(&Rational::from((1, 8)))),
+            Verdict::Holds
+        );
+        assert_eq!(
+            judge(&x(0.125), &x(0.125), Some(&Rational::from((1, 8)))),
+            Verdict::Holds
+        );
         let infinite = Float::with_val(53, Special::Infinity);
         let undefined = Float::with_val(53, Special::Nan);
         assert_eq!(judge(&x(0.0), &infinite, Some(&tenth)), Verdict::Undecided);
-        assert_eq!(judge(&undefined, &undefined, Some(&tenth)), Verdict::Undecided);
+        assert_eq!(
+            judge(&undefined, &undefined, Some(&tenth)),
+            Verdict::Undecided
+        );
         assert_eq!(judge(&x(0.0), &x(1.0), None), Verdict::Measured);
     }
 }

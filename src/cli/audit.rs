@@ -19,7 +19,9 @@ use crate::output::{json, text};
 /// others go on; the exit code is then 2 whatever they say.
 pub fn run(arguments: &AuditArguments) -> u8 {
     if let Some(jobs) = arguments.jobs {
-        let pool = rayon::ThreadPoolBuilder::new().num_threads(usize::from(jobs)).build_global();
+        let pool = rayon::ThreadPoolBuilder::new()
+            .num_threads(usize::from(jobs))
+            .build_global();
         if let Err(error) = pool {
             complain(&format!("cannot start {jobs} threads: {error}"));
             return BAD_INPUT;
@@ -50,8 +52,10 @@ pub fn run(arguments: &AuditArguments) -> u8 {
         }
     }
     if arguments.format == Format::Json {
-        let entries: Vec<_> =
-            done.iter().map(|(path, certificate)| json::Entry { path, certificate }).collect();
+        let entries: Vec<_> = done
+            .iter()
+            .map(|(path, certificate)| json::Entry { path, certificate })
+            .collect();
         match json::summary(&entries) {
             Ok(summary) => print(&format!("{summary}\n")),
             Err(error) => {
@@ -60,12 +64,19 @@ pub fn run(arguments: &AuditArguments) -> u8 {
             }
         }
     }
-    if bad { BAD_INPUT } else { exit_code(done.iter().map(|(_, certificate)| certificate)) }
+    if bad {
+        BAD_INPUT
+    } else {
+        exit_code(done.iter().map(|(_, certificate)| certificate))
+    }
 }
 
 /// Audits one file and writes its certificate; `None` after a complaint.
 fn one(arguments: &AuditArguments, found: &Found) -> Option<Certificate> {
-    let options = ReadOptions { allow_outside: arguments.allow_outside, ..ReadOptions::default() };
+    let options = ReadOptions {
+        allow_outside: arguments.allow_outside,
+        ..ReadOptions::default()
+    };
     let file = match file::read(&found.path, &options) {
         Ok(file) => file,
         Err(diagnostics) => {
@@ -79,7 +90,9 @@ fn one(arguments: &AuditArguments, found: &Found) -> Option<Certificate> {
         anstream::eprintln!("{note}");
     }
     let bar = Bar::new(arguments.quiet, &found.path);
-    let outcome = audit_run::run(&file, arguments.effort, &|units| bar.start(units), &|| bar.advance());
+    let outcome = audit_run::run(&file, arguments.effort, &|units| bar.start(units), &|| {
+        bar.advance()
+    });
     bar.finish();
     let outcomes = match outcome {
         Ok(outcomes) => outcomes,
@@ -106,7 +119,11 @@ fn one(arguments: &AuditArguments, found: &Found) -> Option<Certificate> {
 fn describe(file: &AuditFile, error: &audit_run::AuditError) -> String {
     let name = &file.name;
     match error {
-        audit_run::AuditError::Undefined { approximant, claim, undefined } => {
+        audit_run::AuditError::Undefined {
+            approximant,
+            claim,
+            undefined,
+        } => {
             let audited = &file.approximants[*approximant];
             let formula = match undefined.part {
                 crate::bound::patch::Part::Reference => file.reference_of(*approximant),
@@ -161,8 +178,16 @@ const WORTH_A_BAR: u64 = 50;
 
 impl Bar {
     fn new(quiet: bool, path: &Path) -> Self {
-        let name = path.file_name().unwrap_or_default().to_string_lossy().into_owned();
-        Self { bar: OnceLock::new(), visible: !quiet && std::io::stderr().is_terminal(), name }
+        let name = path
+            .file_name()
+            .unwrap_or_default()
+            .to_string_lossy()
+            .into_owned();
+        Self {
+            bar: OnceLock::new(),
+            visible: !quiet && std::io::stderr().is_terminal(),
+            name,
+        }
     }
 
     fn start(&self, units: u64) {
@@ -170,9 +195,9 @@ impl Bar {
             return;
         }
         let bar = ProgressBar::with_draw_target(Some(units), ProgressDrawTarget::stderr());
-        if let Ok(style) =
-            ProgressStyle::with_template("{msg}  {bar:30}  {pos}/{len} pieces  {per_sec}, {eta} left")
-        {
+        if let Ok(style) = ProgressStyle::with_template(
+            "{msg}  {bar:30}  {pos}/{len} pieces  {per_sec}, {eta} left",
+        ) {
             bar.set_style(style);
         }
         bar.set_message(self.name.clone());

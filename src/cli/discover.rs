@@ -43,7 +43,10 @@ pub fn audit_files(paths: &[PathBuf]) -> Result<Vec<Found>, Vec<String>> {
         } else {
             // Whether it exists and can be read shows when it is read.
             let name = path.file_name().map(PathBuf::from).unwrap_or_default();
-            found.push(Found { path: path.clone(), certificate: certificate_path(&name) });
+            found.push(Found {
+                path: path.clone(),
+                certificate: certificate_path(&name),
+            });
         }
     }
     let mut places: BTreeMap<&Path, &Path> = BTreeMap::new();
@@ -59,12 +62,25 @@ pub fn audit_files(paths: &[PathBuf]) -> Result<Vec<Found>, Vec<String>> {
             ));
         }
     }
-    if errors.is_empty() { Ok(found) } else { Err(errors) }
+    if errors.is_empty() {
+        Ok(found)
+    } else {
+        Err(errors)
+    }
 }
 
-fn below(root: &Path, folder: &Path, depth: usize, found: &mut Vec<Found>, errors: &mut Vec<String>) {
+fn below(
+    root: &Path,
+    folder: &Path,
+    depth: usize,
+    found: &mut Vec<Found>,
+    errors: &mut Vec<String>,
+) {
     if depth > DEEPEST {
-        errors.push(format!("{}: folders are nested more than {DEEPEST} deep", folder.display()));
+        errors.push(format!(
+            "{}: folders are nested more than {DEEPEST} deep",
+            folder.display()
+        ));
         return;
     }
     let entries = match fs_err::read_dir(folder).and_then(Iterator::collect::<Result<Vec<_>, _>>) {
@@ -76,7 +92,12 @@ fn below(root: &Path, folder: &Path, depth: usize, found: &mut Vec<Found>, error
     };
     let mut entries: Vec<(PathBuf, bool)> = entries
         .into_iter()
-        .map(|entry| (entry.path(), entry.file_type().is_ok_and(|kind| kind.is_dir())))
+        .map(|entry| {
+            (
+                entry.path(),
+                entry.file_type().is_ok_and(|kind| kind.is_dir()),
+            )
+        })
         .collect();
     entries.sort();
     for (path, is_folder) in entries {
@@ -84,14 +105,19 @@ fn below(root: &Path, folder: &Path, depth: usize, found: &mut Vec<Found>, error
             below(root, &path, depth + 1, found, errors);
         } else if is_audit_file(&path) {
             let relative = path.strip_prefix(root).unwrap_or(&path);
-            found.push(Found { certificate: certificate_path(relative), path });
+            found.push(Found {
+                certificate: certificate_path(relative),
+                path,
+            });
         }
     }
 }
 
 fn is_audit_file(path: &Path) -> bool {
     let name = path.file_name().unwrap_or_default().to_string_lossy();
-    ENDINGS.iter().any(|ending| name.ends_with(ending) && name.len() > ending.len())
+    ENDINGS
+        .iter()
+        .any(|ending| name.ends_with(ending) && name.len() > ending.len())
 }
 
 fn certificate_path(relative: &Path) -> PathBuf {
@@ -121,11 +147,17 @@ mod tests {
         make("b/notes.toml");
         make("b/.audit.toml");
         let found = audit_files(&[root.path().to_owned()]).unwrap();
-        let places: Vec<_> = found.iter().map(|f| f.certificate.display().to_string()).collect();
+        let places: Vec<_> = found
+            .iter()
+            .map(|f| f.certificate.display().to_string())
+            .collect();
         assert_eq!(places, ["a.certificate.json", "b/two.certificate.json"]);
         make("b/two.audit.toml");
         let errors = audit_files(&[root.path().to_owned()]).unwrap_err();
-        assert!(errors[0].contains("would both write b/two.certificate.json"), "{errors:?}");
+        assert!(
+            errors[0].contains("would both write b/two.certificate.json"),
+            "{errors:?}"
+        );
         let empty = tempfile::tempdir().unwrap();
         assert!(audit_files(&[empty.path().to_owned()]).unwrap_err()[0].contains("no audit file"));
     }

@@ -15,7 +15,11 @@ pub fn check() -> Result<(), String> {
     use std::arch::x86_64::{__cpuid, __cpuid_count};
     let highest = __cpuid(0).eax;
     let first = __cpuid(1).ecx;
-    let seventh = if highest >= 7 { __cpuid_count(7, 0).ebx } else { 0 };
+    let seventh = if highest >= 7 {
+        __cpuid_count(7, 0).ebx
+    } else {
+        0
+    };
     let mut missing = Vec::new();
     if first & (1 << 12) == 0 {
         missing.push("FMA");

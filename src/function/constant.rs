@@ -1,16 +1,27 @@
 //! Constants of an audit: ends of pieces and claims, knots, origins and scales.
 
-use rug::Rational;
+use rug::float::{Round, Special};
+use rug::{Float, Rational};
 
 use super::formula::{Formula, FormulaBuilder, Operation};
 use super::parser::{SyntaxError, parse_formula};
+use super::range::range;
+use crate::number::ball::Ball;
 use crate::number::literal;
+use crate::number::wide_interval::WideInterval;
 
 #[cfg(test)]
 mod tests;
 
 /// Parts of a + b pi with more bits than this are not kept exactly.
 const EXACT_BITS: u32 = 200_000;
+
+/// Largest exponent of a bound in modulus; above that of any a + b pi that is kept exactly.
+const EXPONENT_LIMIT: i64 = 400_000;
+
+/// Bits beyond a ball's precision in which its ends are computed, so that its radius stays a few
+/// units in the last place.
+const GUARD_BITS: u32 = 16;
 
 /// A real number given by a literal such as `2^-58` or a constant formula such as `pi/4`.
 #[derive(Clone, Debug)]
@@ -70,6 +81,57 @@ impl Constant {
         self.exact.clone()
     }
 
+    /// Rational bounds of the value, or `None` where it could not be shown to exist (`1/0`).
+    ///
+    /// A rational value that is known gives two equal bounds. Otherwise every operation of the
+    /// formula is enclosed with ends of `precision` bits rounded outward, so the bounds contain the
+    /// value whatever its operations lose; the usual width is a few units in the last place of
+    /// the largest intermediate result. There are no bounds either where they would be beyond
+    /// 2^400000, and a bound within 2^-400000 of zero moves outward to zero or to that number.
+    pub fn enclosure(&self, precision: u32) -> Option<(Rational, Rational)> {
+        if let Some(value) = self.as_rational() {
+            return Some((value.clone(), value.clone()));
+        }
+        let value = self.interval(precision)?;
+        Some((
+            outward(value.lower(), Round::Down)?,
+            outward(value.upper(), Round::Up)?,
+        ))
+    }
+
+    /// A ball that contains the value, or `None` where it could not be shown to exist.
+    pub fn ball(&self, precision: u32) -> Option<Ball> {
+        if let Some(value) = self.as_rational() {
+            return Some(Ball::from_rational(value, precision));
+        }
+        let value = self.interval(precision.saturating_add(GUARD_BITS))?;
+        Some(Ball::from_bounds(value.lower(), value.upper(), precision))
+    }
+
+    /// Encloses the value, rounded outward; the whole line where it could not be shown to exist.
+    pub fn wide_interval(&self, precision: u32) -> WideInterval {
+        match self.as_rational() {
+            Some(value) => WideInterval::from_rational(value, precision),
+            None => self.interval(precision).unwrap_or_else(|| {
+                let end = |special| Float::with_val(precision, special);
+                WideInterval::new(end(Special::NegInfinity), end(Special::Infinity))
+            }),
+        }
+    }
+
+    /// Encloses a value that is not known to be rational.
+    fn interval(&self, precision: u32) -> Option<WideInterval> {
+        let value = match &self.exact {
+            // One sum instead of all operations, so nothing cancels twice.
+            Some((a, b)) => WideInterval::pi(precision)
+                .mul(&WideInterval::from_rational(b, precision))
+                .add(&WideInterval::from_rational(a, precision)),
+            // The formula does not use its argument.
+            None => range(&self.formula, &WideInterval::zero(precision)).ok()?,
+        };
+        value.is_finite().then_some(value)
+    }
+
     fn with_text(text: &str, value: Rational) -> Self {
         let mut builder = FormulaBuilder::new(text);
         let root = builder.push(Operation::Rational(value.clone()), 0..text.len());
@@ -85,6 +147,23 @@ impl From<Rational> for Constant {
     fn from(value: Rational) -> Self {
         Self::with_text(&value.to_string(), value)
     }
+}
+
+/// A bound as a rational number, moved outward where its exponent would fill the memory.
+fn outward(bound: &Float, direction: Round) -> Option<Rational> {
+    let exponent = i64::from(bound.get_exp().unwrap_or(0));
+    if exponent > EXPONENT_LIMIT {
+        return None;
+    }
+    if exponent >= -EXPONENT_LIMIT {
+        return bound.to_rational();
+    }
+    let least = Rational::from(1) >> EXPONENT_LIMIT as usize;
+    Some(match (bound.is_sign_negative(), direction) {
+        (true, Round::Down) => -least,
+        (false, Round::Up) => least,
+        _ => Rational::new(),
+    })
 }
 
 /// The value of a constant formula as a + b pi, computed exactly from operand to operation.

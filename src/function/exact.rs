@@ -5,12 +5,13 @@
 //! are numbers a + b pi with rational a and b, or unknown: enough for the points at which the
 //! zeros of real formulas lie (sin(x) at a multiple of pi, log1p(x) at 0, exp(x) - 1 at 0), and
 //! nothing is ever rounded. The two directions meet in [`leading_coefficients`]: what is zero is
-//! proved here, what is not zero is proved by the balls of [`series`](crate::function::series).
+//! proved here, what is not zero is proved by the balls of a [power series](crate::function::series).
 
 use std::cmp::Ordering;
 use std::f64::consts::PI;
 
-use rug::{Integer, Rational};
+use rug::float::Round;
+use rug::{Float, Rational};
 
 use crate::function::exact::taylor::{Known, Taylor};
 use crate::function::formula::{Formula, Function, NodeId, Operation};
@@ -19,6 +20,7 @@ use crate::number::ball::Ball;
 use crate::number::wide_interval::WideInterval;
 
 mod taylor;
+mod values;
 
 /// An exact expansion point `rational + pi_multiple * pi`.
 #[derive(Clone, Debug, PartialEq, Eq, Hash)]
@@ -43,14 +45,19 @@ impl Centre {
         ball_of(&self.rational, &self.pi_multiple, precision)
     }
 
-    /// Encloses the point.
+    /// The point between two numbers, the nearest ones of the precision unless a + b pi is smaller
+    /// than its parts by more than a factor of 2^64.
     pub fn wide_interval(&self, precision: u32) -> WideInterval {
-        let rational = WideInterval::from_rational(&self.rational, precision);
         if self.pi_multiple.is_zero() {
-            return rational;
+            return WideInterval::from_rational(&self.rational, precision);
         }
-        let multiple = WideInterval::from_rational(&self.pi_multiple, precision);
-        rational.add(&multiple.mul(&WideInterval::pi(precision)))
+        let bits = precision.saturating_add(64);
+        let pi_part =
+            WideInterval::from_rational(&self.pi_multiple, bits).mul(&WideInterval::pi(bits));
+        let sum = pi_part.add(&WideInterval::from_rational(&self.rational, bits));
+        let (lower, _) = Float::with_val_round(precision, sum.lower(), Round::Down);
+        let (upper, _) = Float::with_val_round(precision, sum.upper(), Round::Up);
+        WideInterval::new(lower, upper)
     }
 
     /// A double near the point, to steer a search with.
@@ -272,20 +279,20 @@ impl<'a> ExactCoefficients<'a> {
             }
             Operation::PowerRational(base, exponent) => {
                 let base = &self.nodes[*base];
-                taylor::power(base, exponent, rational_power(&base[0], exponent))
+                taylor::power(base, exponent, values::rational_power(&base[0], exponent))
             }
             Operation::Power(base, exponent) => {
                 let base = &self.nodes[*base];
                 let exponent = &self.nodes[*exponent];
-                let logarithm = taylor::logarithm(base, logarithm_value(&base[0]));
+                let logarithm = taylor::logarithm(base, values::logarithm_value(&base[0]));
                 let argument = taylor::product(exponent, &logarithm);
                 let value = match &exponent[0] {
                     Some(exponent) if exponent.as_rational().is_some() => {
-                        rational_power(&base[0], &exponent.rational)
+                        values::rational_power(&base[0], &exponent.rational)
                     }
                     _ => None,
                 };
-                let value = value.or_else(|| exponential_value(&argument[0]));
+                let value = value.or_else(|| values::exponential_value(&argument[0]));
                 taylor::exponential(&argument, value)
             }
             Operation::Apply(function, operand) => {
@@ -307,100 +314,113 @@ impl<'a> ExactCoefficients<'a> {
         let square = || taylor::product(u, u);
         let value = &u[0];
         let inverse_root = |radicand: Taylor| {
-            let root = rational_power(&radicand[0], &Rational::from((-1, 2)));
+            let root = values::rational_power(&radicand[0], &Rational::from((-1, 2)));
             taylor::power(&radicand, &Rational::from((-1, 2)), root)
         };
         match function {
             Function::Sqrt => {
                 let half = Rational::from((1, 2));
-                taylor::power(u, &half, rational_power(value, &half))
+                taylor::power(u, &half, values::rational_power(value, &half))
             }
             Function::Cbrt => {
                 let third = Rational::from((1, 3));
                 let root = match value {
                     Some(number) if number.rational < 0 => {
-                        taylor::negated(&rational_power(&taylor::negated(value), &third))
+                        taylor::negated(&values::rational_power(&taylor::negated(value), &third))
                     }
-                    _ => rational_power(value, &third),
+                    _ => values::rational_power(value, &third),
                 };
                 taylor::power(u, &third, root)
             }
-            Function::Exp => taylor::exponential(u, exponential_value(value)),
+            Function::Exp => taylor::exponential(u, values::exponential_value(value)),
             Function::Exp2 => {
                 let integer = value
                     .as_ref()
                     .and_then(Exact::as_rational)
                     .filter(|exponent| exponent.is_integer());
-                let power =
-                    integer.and_then(|exponent| rational_power(&known_integer(2), exponent));
+                let power = integer.and_then(|exponent| {
+                    values::rational_power(&values::known_integer(2), exponent)
+                });
                 taylor::exponential(&taylor::times_unknown(u), power)
             }
             Function::Expm1 => {
-                let mut result = taylor::exponential(u, exponential_value(value));
-                result[0] = odd_value(value);
+                let mut result = taylor::exponential(u, values::exponential_value(value));
+                result[0] = values::odd_value(value);
                 result
             }
-            Function::Log => taylor::logarithm(u, logarithm_value(value)),
+            Function::Log => taylor::logarithm(u, values::logarithm_value(value)),
             Function::Log2 => taylor::with_value(
                 taylor::times_unknown(&taylor::logarithm(u, None)),
-                power_of(2, value),
+                values::power_of(2, value),
             ),
             Function::Log10 => taylor::with_value(
                 taylor::times_unknown(&taylor::logarithm(u, None)),
-                power_of(10, value),
+                values::power_of(10, value),
             ),
-            Function::Log1p => taylor::logarithm(&taylor::add(&one(), u), odd_value(value)),
+            Function::Log1p => taylor::logarithm(&taylor::add(&one(), u), values::odd_value(value)),
             Function::Sin => {
-                let (sine, cosine) = (sine_value(value), cosine_value(value));
+                let (sine, cosine) = (values::sine_value(value), values::cosine_value(value));
                 taylor::rotation(u, sine, cosine, true).0
             }
             Function::Cos => {
-                let (sine, cosine) = (sine_value(value), cosine_value(value));
+                let (sine, cosine) = (values::sine_value(value), values::cosine_value(value));
                 taylor::rotation(u, sine, cosine, true).1
             }
             Function::Sinh => {
-                taylor::rotation(u, odd_value(value), exponential_value(value), false).0
+                taylor::rotation(
+                    u,
+                    values::odd_value(value),
+                    values::exponential_value(value),
+                    false,
+                )
+                .0
             }
             Function::Cosh => {
-                taylor::rotation(u, odd_value(value), exponential_value(value), false).1
+                taylor::rotation(
+                    u,
+                    values::odd_value(value),
+                    values::exponential_value(value),
+                    false,
+                )
+                .1
             }
-            Function::Tan => taylor::tangent(u, tangent_value(value), true),
-            Function::Tanh => taylor::tangent(u, odd_value(value), false),
+            Function::Tan => taylor::tangent(u, values::tangent_value(value), true),
+            Function::Tanh => taylor::tangent(u, values::odd_value(value), false),
             Function::Asin => taylor::integral(
                 u,
                 &inverse_root(taylor::subtract(&one(), &square())),
-                arcsine_value(value),
+                values::arcsine_value(value),
             ),
             Function::Acos => {
                 let arcsine = taylor::integral(
                     u,
                     &inverse_root(taylor::subtract(&one(), &square())),
-                    arcsine_value(value),
+                    values::arcsine_value(value),
                 );
                 let quarter = Some(Exact::of_pi(Rational::from((1, 2))));
                 taylor::subtract(&taylor::constant(self.count, quarter), &arcsine)
             }
             Function::Atan => {
                 let derivative = taylor::quotient(&one(), &taylor::add(&one(), &square()));
-                taylor::integral(u, &derivative, arctangent_value(value))
+                taylor::integral(u, &derivative, values::arctangent_value(value))
             }
             Function::Asinh => taylor::integral(
                 u,
                 &inverse_root(taylor::add(&one(), &square())),
-                odd_value(value),
+                values::odd_value(value),
             ),
             Function::Acosh => taylor::integral(
                 u,
                 &inverse_root(taylor::subtract(&square(), &one())),
-                logarithm_value(value),
+                values::logarithm_value(value),
             ),
             Function::Atanh => {
                 let derivative = taylor::quotient(&one(), &taylor::subtract(&one(), &square()));
-                taylor::integral(u, &derivative, odd_value(value))
+                taylor::integral(u, &derivative, values::odd_value(value))
             }
-            Function::Erf => taylor::integral(u, &gaussian(&square()), odd_value(value)),
+            Function::Erf => taylor::integral(u, &gaussian(&square()), values::odd_value(value)),
             Function::Erfc => {
-                let error = taylor::integral(u, &gaussian(&square()), odd_value(value));
+                let error = taylor::integral(u, &gaussian(&square()), values::odd_value(value));
                 taylor::subtract(&one(), &error)
             }
             Function::Fabs => match sign {
@@ -423,122 +443,9 @@ pub(crate) fn leading_zeros(coefficients: &[Option<Exact>]) -> usize {
 /// 2/sqrt(pi) exp(-u^2) from u^2; the factor is not in Q + Q pi.
 fn gaussian(square: &[Known]) -> Taylor {
     let exponent = taylor::negate(square);
-    let value = exponential_value(&exponent[0]);
+    let value = values::exponential_value(&exponent[0]);
     taylor::times_unknown(&taylor::exponential(&exponent, value))
 }
 
-fn known_integer(value: i32) -> Known {
-    Some(Exact::from(Rational::from(value)))
-}
-
-/// f(u) where f(0) = 0 is the only value that is known.
-fn odd_value(u: &Known) -> Known {
-    u.as_ref().filter(|value| value.is_zero()).cloned()
-}
-
-/// exp(u), and cosh(u): 1 at 0.
-fn exponential_value(u: &Known) -> Known {
-    odd_value(u).and(known_integer(1))
-}
-
-/// log(u), and acosh(u): 0 at 1.
-fn logarithm_value(u: &Known) -> Known {
-    u.as_ref()
-        .filter(|value| value.as_rational().is_some_and(|value| *value == 1))?;
-    Some(Exact::zero())
-}
-
-/// sin(b pi) = sin((b mod 2) pi), rational for b a multiple of 1/2 and for some multiples of 1/6
-/// (and for no other rational b, by Niven's theorem).
-fn sine_of_pi_multiple(multiple: &Rational) -> Known {
-    let turn = Rational::from(multiple / 2u32);
-    let sixths = (turn.clone() - turn.floor()) * 12u32;
-    let value = match sixths.is_integer().then(|| sixths.numer().to_u32())?? {
-        0 | 6 => Rational::new(),
-        1 | 5 => Rational::from((1, 2)),
-        3 => Rational::from(1),
-        7 | 11 => Rational::from((-1, 2)),
-        9 => Rational::from(-1),
-        _ => return None,
-    };
-    Some(Exact::from(value))
-}
-
-fn sine_value(u: &Known) -> Known {
-    sine_of_pi_multiple(u.as_ref()?.as_pi_multiple()?)
-}
-
-/// cos(y) = sin(y + pi/2).
-fn cosine_value(u: &Known) -> Known {
-    let multiple = u.as_ref()?.as_pi_multiple()?;
-    sine_of_pi_multiple(&(multiple.clone() + Rational::from((1, 2))))
-}
-
-/// tan(b pi): 0 at integers b, 1 and -1 a quarter beyond and before them.
-fn tangent_value(u: &Known) -> Known {
-    let multiple = u.as_ref()?.as_pi_multiple()?;
-    let quarters = (multiple.clone() - multiple.clone().floor()) * 4u32;
-    match quarters.is_integer().then(|| quarters.numer().to_u32())?? {
-        0 => known_integer(0),
-        1 => known_integer(1),
-        3 => known_integer(-1),
-        _ => None,
-    }
-}
-
-/// asin(u) for u in {0, 1/2, -1/2, 1, -1}.
-fn arcsine_value(u: &Known) -> Known {
-    let doubled = Rational::from(u.as_ref()?.as_rational()? * 2u32);
-    let sixths = match doubled.is_integer().then(|| doubled.numer().to_i32())?? {
-        0 => 0,
-        1 => 1,
-        -1 => -1,
-        2 => 3,
-        -2 => -3,
-        _ => return None,
-    };
-    Some(Exact::of_pi(Rational::from((sixths, 6))))
-}
-
-/// atan(u) for u in {0, 1, -1}.
-fn arctangent_value(u: &Known) -> Known {
-    let value = u.as_ref()?.as_rational()?;
-    let quarters = value.is_integer().then(|| value.numer().to_i32())??;
-    (-1..=1)
-        .contains(&quarters)
-        .then(|| Exact::of_pi(Rational::from((quarters, 4))))
-}
-
-/// log_b(u), where u is an integer power of b.
-fn power_of(base: u32, u: &Known) -> Known {
-    let value = u.as_ref()?.as_rational()?;
-    if *value <= 0 {
-        return None;
-    }
-    let (large, small, sign) = if *value.denom() == 1 {
-        (value.numer(), value.denom(), 1)
-    } else {
-        (value.denom(), value.numer(), -1)
-    };
-    let mut rest = large.clone();
-    let exponent = rest.remove_factor_mut(&Integer::from(base));
-    (rest == 1 && *small == 1).then(|| Exact::from(Rational::from(sign * i64::from(exponent))))
-}
-
-/// u^r for a rational u > 0 where it is rational (and 0^r = 0 for r > 0).
-fn rational_power(u: &Known, exponent: &Rational) -> Known {
-    let base = u.as_ref()?.as_rational()?;
-    if *base < 0 || (base.is_zero() && *exponent <= 0) {
-        return None;
-    }
-    if base.is_zero() || *base == 1 {
-        return u.clone();
-    }
-    let degree = exponent.denom().to_u32()?;
-    let numerator = taylor::integer_root(base.numer(), degree)?;
-    let denominator = taylor::integer_root(base.denom(), degree)?;
-    taylor::number_power(
-        &Rational::from((numerator, denominator)),
-        exponent.numer().to_i32()?,
-    )
-}
+#[cfg(test)]
+mod tests;

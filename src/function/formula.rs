@@ -153,11 +153,54 @@ impl Formula {
         self.spans[node].clone()
     }
 
+    /// The function that is 0 everywhere.
+    pub fn zero() -> Self {
+        let mut builder = FormulaBuilder::new("0");
+        let root = builder.push(Operation::Rational(Rational::new()), 0..1);
+        builder.finish(root)
+    }
+
     /// True if the value does not depend on the variable.
     pub fn is_constant(&self) -> bool {
         !self
             .operations
             .iter()
             .any(|operation| matches!(operation, Operation::Variable))
+    }
+
+    /// The value of one operation as a formula, without the operations that it does not need. The
+    /// text and the spans stay those of the whole.
+    pub fn with_root(&self, node: NodeId) -> Self {
+        let needed = builder::needed(&self.operations, node);
+        self.clone().restricted(node, &needed).0
+    }
+
+    /// Keeps the operations marked in `needed`, which include the root and all operands, and tells
+    /// where each of them stands then.
+    fn restricted(self, root: NodeId, needed: &[bool]) -> (Self, Vec<Option<NodeId>>) {
+        let mut operations = Vec::new();
+        let mut spans = Vec::new();
+        let mut positions = vec![None; self.operations.len()];
+        let listed = self.operations.into_iter().zip(self.spans);
+        for (position, (operation, span)) in listed.enumerate() {
+            if needed[position] {
+                positions[position] = Some(operations.len());
+                operations.push(builder::moved(operation, |operand| {
+                    positions[operand].unwrap_or(operand)
+                }));
+                spans.push(span);
+            }
+        }
+        let root = positions[root].unwrap_or(root);
+        let text = self.text;
+        (
+            Self {
+                operations,
+                spans,
+                root,
+                text,
+            },
+            positions,
+        )
     }
 }

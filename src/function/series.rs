@@ -1,9 +1,9 @@
 //! The reference function as a truncated power series in balls.
 //!
 //! Every operation of the formula becomes a power series in t, x = centre + scale t, by the
-//! recurrences of [`power_series`]. A quotient whose denominator vanishes at the centre is
+//! recurrences of the module `power_series`. A quotient whose denominator vanishes at the centre is
 //! continued there if the zeros of numerator and denominator are proved by exact arithmetic
-//! ([`exact`](crate::function::exact)): with d(t) = t^k D(t), D(0) != 0 and n(t) = t^k N(t) the
+//! ([exact coefficients](crate::function::exact)): with d(t) = t^k D(t), D(0) != 0 and n(t) = t^k N(t) the
 //! continuation is N/D. Such a quotient is k terms shorter than its operands, so the whole formula
 //! is evaluated again with the missing terms.
 
@@ -22,12 +22,13 @@ use crate::number::ball::Ball;
 mod elementary;
 mod power_series;
 
-/// How many leading coefficients are examined exactly at a quotient 0/0.
+/// How many leading coefficients are known exactly for a quotient 0/0. A zero of this order or a
+/// higher one is refused, and so are nested singularities whose orders add up to as much.
 const EXACT_COUNT: usize = 8;
 
 /// How many terms more than asked for are carried to make up for removable singularities, each of
 /// which costs the order of its zero. A formula that nests so many that it needs more is refused.
-const EXTRA_MAX: usize = 256;
+const EXTRA_MAX: usize = 64;
 
 /// The precision at which [`exact_coefficients`] proves coefficients to be different from zero.
 const SIGN_PRECISION: u32 = 128;
@@ -38,6 +39,10 @@ const SIGN_PRECISION: u32 = 128;
 /// A success with more than one term proves f analytic at the centre (after continuation through
 /// removable singularities). With one term it is an evaluation at a point, which also works where
 /// only the value exists, such as sqrt(0) and asin(1).
+///
+/// `precision` is that of the arithmetic. On |t| <= 1 a few bits of it are lost; a coefficient that is
+/// much smaller than the largest one may lose, relative to itself, up to about three bits times its
+/// index in compound formulas.
 ///
 /// # Errors
 ///
@@ -64,7 +69,7 @@ pub fn series(
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
 pub struct SeriesWork {
     /// The number of ball multiplications; a value of an elementary function counts as
-    /// [`ELEMENTARY_WORK`](elementary::ELEMENTARY_WORK) of them.
+    /// 20 of them.
     pub multiplications: u64,
 }
 
@@ -274,23 +279,13 @@ impl<'a> Evaluation<'a> {
                 .arithmetic
                 .product(&self.nodes[*left], &self.nodes[*right]),
             Operation::Divide(left, right) => return self.divide(node, *left, *right),
-            Operation::PowerInteger(base, exponent) => {
-                let power = self
-                    .arithmetic
-                    .power_integer(&self.nodes[*base], exponent.unsigned_abs());
-                if *exponent >= 0 {
-                    power
-                } else {
-                    let one = PowerSeries::constant(Ball::one(precision));
-                    let base = self.nodes[*base].coefficient(0, precision);
-                    self.arithmetic.quotient(&one, &power).ok_or_else(|| {
-                        refused(
-                            node,
-                            Obstacle::new(RefusalKind::DivisionByZero, base.is_exact_zero()),
-                        )
-                    })?
-                }
-            }
+            Operation::PowerInteger(base, exponent) if *exponent >= 0 => self
+                .arithmetic
+                .power_integer(&self.nodes[*base], exponent.unsigned_abs()),
+            Operation::PowerInteger(base, exponent) => self
+                .arithmetic
+                .power_negative(&self.nodes[*base], *exponent)
+                .map_err(|obstacle| refused(node, obstacle))?,
             Operation::PowerRational(base, exponent) => self
                 .arithmetic
                 .power_rational(&self.nodes[*base], exponent)

@@ -19,7 +19,7 @@ use std::cmp::Ordering;
 use rug::float::{self, Constant, Round};
 use rug::{Assign, Float, Rational};
 
-use crate::number::radius::{RADIUS_BITS, Radius};
+use crate::number::radius::{RADIUS_BITS, Radius, Term};
 
 /// The least precision of a midpoint; a smaller one is raised to it.
 const PRECISION_MIN: u32 = 2;
@@ -160,7 +160,8 @@ impl Ball {
     #[inline]
     fn settle(&mut self, ternary: Ordering) {
         if ternary != Ordering::Equal {
-            self.radius = self.radius.add(rounding_error(&self.midpoint));
+            let error = rounding_term(&self.midpoint, ternary);
+            self.radius = Radius::sum([self.radius.term(), error]);
         }
         if !self.midpoint.is_normal() || self.radius.is_infinite() {
             if !self.midpoint.is_finite() {
@@ -376,17 +377,21 @@ fn allowed_precision(precision: u32) -> u32 {
 /// power of two, so the error is at most 2^(e-p-1). MPFR has no subnormal numbers: between 0 and the
 /// least positive number w the error is less than w, and w bounds the error where m = 0 or |m| = w.
 #[inline]
-fn rounding_error(midpoint: &Float) -> Radius {
+fn rounding_term(midpoint: &Float, ternary: Ordering) -> Term {
+    if ternary == Ordering::Equal {
+        return Term::ZERO;
+    }
     match midpoint.get_exp() {
         Some(exponent) => {
             let half_unit = i64::from(exponent) - i64::from(midpoint.prec()) - 1;
             if exponent > i32::MIN / 8 {
-                return Radius::power_of_two(half_unit);
+                return Term::power_of_two(half_unit);
             }
-            Radius::power_of_two(half_unit.max(least_positive_exponent()))
+            Term::power_of_two(half_unit.max(least_positive_exponent()))
         }
-        None if midpoint.is_zero() => Radius::power_of_two(least_positive_exponent()),
-        None => Radius::INFINITY,
+        // A zero comes from an underflow, an infinity has an unbounded error.
+        None if midpoint.is_zero() => Term::power_of_two(least_positive_exponent()),
+        None => Radius::INFINITY.term(),
     }
 }
 

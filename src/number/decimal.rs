@@ -18,7 +18,10 @@ pub fn rounded_up(x: &Float, digits: usize) -> String {
 
 /// The rational `x` in decimal, rounded toward minus infinity.
 pub fn rational_down(x: &Rational, digits: usize) -> String {
-    rounded_down(&Float::with_val_round(bits(digits), x, Round::Down).0, digits)
+    rounded_down(
+        &Float::with_val_round(bits(digits), x, Round::Down).0,
+        digits,
+    )
 }
 
 /// The rational `x` in decimal, rounded toward plus infinity.
@@ -28,7 +31,10 @@ pub fn rational_up(x: &Rational, digits: usize) -> String {
 
 /// Working bits that make the second rounding of a decimal conversion harmless.
 fn bits(digits: usize) -> u32 {
-    u32::try_from(digits).unwrap_or(u32::MAX / 8).saturating_mul(4) + 64
+    u32::try_from(digits)
+        .unwrap_or(u32::MAX / 8)
+        .saturating_mul(4)
+        + 64
 }
 
 fn rounded(x: &Float, digits: usize, round: Round) -> String {
@@ -63,7 +69,11 @@ fn place_point(digits: &str, point: i64) -> String {
         return format!("{whole}.{fraction}");
     }
     let (first, rest) = digits.split_at(1);
-    let fraction = if rest.is_empty() { String::new() } else { format!(".{rest}") };
+    let fraction = if rest.is_empty() {
+        String::new()
+    } else {
+        format!(".{rest}")
+    };
     format!("{first}{fraction}e{}", point - 1)
 }
 
@@ -87,8 +97,8 @@ fn hexadecimal(x: &Rational) -> String {
     let odd = numerator >> trailing;
     let length = odd.significant_bits();
     // odd = 1.fraction * 2^(length-1)
-    let exponent = i64::from(length) - 1 + i64::from(trailing)
-        - i64::from(x.denom().significant_bits() - 1);
+    let exponent =
+        i64::from(length) - 1 + i64::from(trailing) - i64::from(x.denom().significant_bits() - 1);
     let fraction_bits = length.saturating_sub(1);
     let fraction = odd - (Integer::from(1) << fraction_bits);
     if fraction == 0 {

@@ -30,6 +30,32 @@ pub struct Radius {
     mantissa: u32,
 }
 
+/// A term of a [sum](Radius::sum): mantissa 2^exponent with a mantissa of at most 2^60, 0 with the
+/// least exponent, or infinity with the largest exponent.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Term {
+    mantissa: u64,
+    exponent: i64,
+}
+
+impl Term {
+    /// The number 0.
+    pub(crate) const ZERO: Self = Self {
+        mantissa: 0,
+        exponent: i64::MIN,
+    };
+
+    /// 2^exponent for |exponent| < 2^59.
+    #[inline]
+    pub(crate) const fn power_of_two(exponent: i64) -> Self {
+        const BITS: u32 = 2 * RADIUS_BITS - 2;
+        Self {
+            mantissa: 1 << BITS,
+            exponent: exponent - BITS as i64,
+        }
+    }
+}
+
 #[allow(
     clippy::should_implement_trait,
     reason = "an operator would hide that the operation rounds up"
@@ -72,6 +98,15 @@ impl Radius {
             MANTISSA_MIN,
             exponent.saturating_sub(RADIUS_BITS as i64 - 1),
         )
+    }
+
+    /// The exponent e with 2^(e-1) <= self < 2^e; `None` for zero and infinity.
+    #[inline]
+    pub const fn binary_exponent(self) -> Option<i64> {
+        if self.is_zero() || self.is_infinite() {
+            return None;
+        }
+        Some(self.exponent + RADIUS_BITS as i64)
     }
 
     /// The least radius >= |value|; infinity for an infinite value or a NaN.
@@ -218,6 +253,70 @@ impl Radius {
             mantissa as u32,
             self.exponent + other.exponent + i64::from(shift),
         )
+    }
+
+    /// The sum of up to eight terms, rounded up once: much faster than a chain of single operations.
+    ///
+    /// The mantissas of the terms are at most 2^60. All are aligned to the largest exponent, each
+    /// that loses bits by that is rounded up, and the sum fits 64 bits. The result exceeds the sum of
+    /// the terms by at most a factor 1 + 2^-28 if the largest term has a mantissa of at least 2^58,
+    /// which sums and products of radii have.
+    #[inline]
+    pub(crate) fn sum<const N: usize>(terms: [Term; N]) -> Self {
+        const { assert!(N <= 8) };
+        let mut exponent = i64::MIN;
+        for term in &terms {
+            exponent = exponent.max(term.exponent);
+        }
+        if exponent == i64::MAX {
+            return Self::INFINITY;
+        }
+        let mut sum = 0;
+        for term in &terms {
+            let shift = exponent.saturating_sub(term.exponent).min(63) as u32;
+            sum += (term.mantissa >> shift) + u64::from(shift != 0 && term.mantissa != 0);
+        }
+        Self::from_u64_scaled(sum, exponent)
+    }
+
+    /// The radius as a term of a sum.
+    #[inline]
+    pub(crate) fn term(self) -> Term {
+        let exponent = self.exponent.saturating_sub(i64::from(RADIUS_BITS));
+        let exponent = if self.is_infinite() {
+            i64::MAX
+        } else {
+            exponent
+        };
+        Term {
+            mantissa: u64::from(self.mantissa) << RADIUS_BITS,
+            exponent,
+        }
+    }
+
+    /// The exact product as a term of a sum.
+    #[inline]
+    pub(crate) fn term_of_product(self, other: Self) -> Term {
+        let mantissa = u64::from(self.mantissa) * u64::from(other.mantissa);
+        let exponent = if mantissa == 0 {
+            i64::MIN
+        } else if self.is_infinite() || other.is_infinite() {
+            i64::MAX
+        } else {
+            self.exponent + other.exponent
+        };
+        Term { mantissa, exponent }
+    }
+
+    /// An upper bound of |value|, too large by at most a factor 1 + 2^-28: the leading 30 bits plus one
+    /// unit, without a look at the bits that follow.
+    #[inline]
+    pub fn of_float_near_upper(value: &Float) -> Self {
+        match Self::leading_bits(value) {
+            None if value.is_zero() => Self::ZERO,
+            None => Self::INFINITY,
+            Some((mantissa, exponent, _)) => Self::carried(mantissa + 1, exponent),
+        }
     }
 
     /// The quotient of the two numbers, rounded up. It bounds |a| / |b| if self >= |a| and

@@ -14,7 +14,16 @@ const DIGITS: usize = 5;
 pub fn summary(path: &str, certificate: &Certificate) -> Result<String, fmt::Error> {
     let mut out = String::new();
     let title = &certificate.subject.title;
-    writeln!(out, "{}{}", path.bold(), if title.is_empty() { String::new() } else { format!("  {title}") })?;
+    writeln!(
+        out,
+        "{}{}",
+        path.bold(),
+        if title.is_empty() {
+            String::new()
+        } else {
+            format!("  {title}")
+        }
+    )?;
     let several = certificate.subject.approximants.len() > 1;
     for claim in &certificate.claims {
         claim_lines(&mut out, certificate, claim, several)?;
@@ -22,27 +31,62 @@ pub fn summary(path: &str, certificate: &Certificate) -> Result<String, fmt::Err
     Ok(out)
 }
 
-fn claim_lines(out: &mut String, certificate: &Certificate, claim: &Claim, several: bool) -> fmt::Result {
+fn claim_lines(
+    out: &mut String,
+    certificate: &Certificate,
+    claim: &Claim,
+    several: bool,
+) -> fmt::Result {
     let (word, style) = match claim.verdict {
         Verdict::Holds => ("holds", Style::new().green()),
         Verdict::Fails => ("FAILS", Style::new().red().bold()),
         Verdict::Undecided => ("UNDECIDED", Style::new().yellow().bold()),
         Verdict::Measured => ("measured", Style::new().cyan()),
     };
-    let about = if several { format!(" of {}", claim.approximant) } else { String::new() };
+    let about = if several {
+        format!(" of {}", claim.approximant)
+    } else {
+        String::new()
+    };
     let word = format!("{word:<9}");
-    write!(out, "  {} {}: {} error{about}", word.style(style), claim.id.bold(), claim.error)?;
+    write!(
+        out,
+        "  {} {}: {} error{about}",
+        word.style(style),
+        claim.id.bold(),
+        claim.error
+    )?;
     writeln!(out, " {}", comparison(claim))?;
     if let Some(place) = &claim.worst_at {
         let pieces = pieces_of(certificate, claim).count();
-        let of = if pieces > 1 { format!(", piece {} of {pieces}", place.piece + 1) } else { String::new() };
-        writeln!(out, "            worst at x = {}{of}", shortened(&place.decimal))?;
+        let of = if pieces > 1 {
+            format!(", piece {} of {pieces}", place.piece + 1)
+        } else {
+            String::new()
+        };
+        writeln!(
+            out,
+            "            worst at x = {}{of}",
+            shortened(&place.decimal)
+        )?;
     }
     if let Some(witness) = &claim.witness {
         writeln!(out, "            witness: x = {}", witness.at.exact)?;
-        writeln!(out, "                     approximant {}", middle(&witness.approximant))?;
-        writeln!(out, "                     reference   {}", middle(&witness.reference))?;
-        writeln!(out, "                     error       {}", middle(&witness.error))?;
+        writeln!(
+            out,
+            "                     approximant {}",
+            middle(&witness.approximant)
+        )?;
+        writeln!(
+            out,
+            "                     reference   {}",
+            middle(&witness.reference)
+        )?;
+        writeln!(
+            out,
+            "                     error       {}",
+            middle(&witness.error)
+        )?;
     }
     if let Some((_, error)) = worst_piece(certificate, claim) {
         let budget = &error.budget;
@@ -76,15 +120,26 @@ fn comparison(claim: &Claim) -> String {
     }
 }
 
-fn pieces_of<'a>(certificate: &'a Certificate, claim: &'a Claim) -> impl Iterator<Item = (&'a Piece, &'a PieceError)> {
+fn pieces_of<'a>(
+    certificate: &'a Certificate,
+    claim: &'a Claim,
+) -> impl Iterator<Item = (&'a Piece, &'a PieceError)> {
     certificate
         .pieces
         .iter()
         .filter(|piece| piece.approximant == claim.approximant)
-        .filter_map(|piece| Some((piece, piece.errors.iter().find(|error| error.claim == claim.id)?)))
+        .filter_map(|piece| {
+            Some((
+                piece,
+                piece.errors.iter().find(|error| error.claim == claim.id)?,
+            ))
+        })
 }
 
-fn worst_piece<'a>(certificate: &'a Certificate, claim: &'a Claim) -> Option<(&'a Piece, &'a PieceError)> {
+fn worst_piece<'a>(
+    certificate: &'a Certificate,
+    claim: &'a Claim,
+) -> Option<(&'a Piece, &'a PieceError)> {
     let place = claim.worst_at.as_ref()?;
     pieces_of(certificate, claim).find(|(piece, _)| piece.piece == place.piece)
 }
@@ -95,7 +150,9 @@ fn up_to(text: &str) -> String {
 
 /// A decimal of the certificate with fewer digits, rounded in the given direction.
 fn rounded(text: &str, up: bool) -> String {
-    let Ok(value) = crate::number::literal::parse(text) else { return text.to_owned() };
+    let Ok(value) = crate::number::literal::parse(text) else {
+        return text.to_owned();
+    };
     if up {
         crate::number::decimal::rational_up(&value, DIGITS)
     } else {
@@ -105,7 +162,9 @@ fn rounded(text: &str, up: bool) -> String {
 
 /// An argument with few digits.
 fn shortened(text: &str) -> String {
-    let Ok(value) = crate::number::literal::parse(text) else { return text.to_owned() };
+    let Ok(value) = crate::number::literal::parse(text) else {
+        return text.to_owned();
+    };
     crate::number::decimal::rational_down(&value, 8)
 }
 

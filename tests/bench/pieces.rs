@@ -20,7 +20,10 @@ struct Job {
 }
 
 fn main() {
-    rayon::ThreadPoolBuilder::new().num_threads(1).build_global().expect("one thread");
+    rayon::ThreadPoolBuilder::new()
+        .num_threads(1)
+        .build_global()
+        .expect("one thread");
     println!("| job | pieces | proof, pieces/s | 1,000 samples, pieces/s | ratio |");
     println!("|---|---|---|---|---|");
     for job in [logarithm(10_000), runge(200), bernstein()] {
@@ -78,8 +81,12 @@ fn interpolated(
         let to = format!("{}/{count}", fraction(domain, k + 1, count));
         let list: Vec<String> = coefficients.iter().map(|c| format!("\"{c:e}\"")).collect();
         let comma = if k == 0 { "" } else { "," };
-        write!(pieces, "{comma}{{\"on\":[\"{from}\",\"{to}\"],\"coefficients\":[{}]}}", list.join(","))
-            .expect("writing to a string");
+        write!(
+            pieces,
+            "{comma}{{\"on\":[\"{from}\",\"{to}\"],\"coefficients\":[{}]}}",
+            list.join(",")
+        )
+        .expect("writing to a string");
         table.push((left, coefficients));
     }
     let text = format!(
@@ -92,7 +99,12 @@ fn interpolated(
         let value = coefficients.iter().rev().fold(0.0, |sum, c| sum * u + c);
         value - function(left + width * u)
     };
-    Job { name, text, pieces: count, sample: Box::new(sample) }
+    Job {
+        name,
+        text,
+        pieces: count,
+        sample: Box::new(sample),
+    }
 }
 
 /// The exact end k/count of an integer domain, as a numerator over `count`.
@@ -120,12 +132,26 @@ fn newton_to_powers(nodes: &[f64], values: &[f64]) -> Vec<f64> {
 }
 
 fn logarithm(count: usize) -> Job {
-    interpolated("log2(1+x), cubic", "log2(1+x)", |x| x.ln_1p() / std::f64::consts::LN_2, [0.0, 1.0], count, 3)
+    interpolated(
+        "log2(1+x), cubic",
+        "log2(1+x)",
+        |x| x.ln_1p() / std::f64::consts::LN_2,
+        [0.0, 1.0],
+        count,
+        3,
+    )
 }
 
 fn runge(count: usize) -> Job {
     let function = |x: f64| 1.0 / (1.0 + 25.0 * x * x);
-    interpolated("1/(1+25x^2), quintic", "1/(1+25*x*x)", function, [-1.0, 1.0], count, 5)
+    interpolated(
+        "1/(1+25x^2), quintic",
+        "1/(1+25*x*x)",
+        function,
+        [-1.0, 1.0],
+        count,
+        5,
+    )
 }
 
 /// Bernstein coefficients of the Taylor polynomial of exp: b_j = sum_k C(j,k)/C(n,k)/k!.
@@ -158,5 +184,10 @@ fn bernstein() -> Job {
         }
         row[0] - u.exp()
     };
-    Job { name: "exp, one Bernstein piece of degree 31", text, pieces: 1, sample: Box::new(sample) }
+    Job {
+        name: "exp, one Bernstein piece of degree 31",
+        text,
+        pieces: 1,
+        sample: Box::new(sample),
+    }
 }

@@ -10,28 +10,43 @@ fn polynomial(coefficients: &[f64]) -> DoublePolynomial {
 }
 
 fn region(tightness: f64) -> Region {
-    Region { outer: [-1.0, 1.0], inner: Some([-1.0, 1.0]), known: 0.0, tightness, budget: 1_000_000 }
+    Region {
+        outer: [-1.0, 1.0],
+        inner: Some([-1.0, 1.0]),
+        known: 0.0,
+        tightness,
+        budget: 1_000_000,
+    }
 }
 
 /// Exact value of the polynomial at t.
 fn exact_value(coefficients: &[f64], t: f64) -> Rational {
     let t = Rational::from_f64(t).unwrap();
-    coefficients
-        .iter()
-        .rev()
-        .fold(Rational::new(), |sum, &c| sum * &t + Rational::from_f64(c).unwrap())
+    coefficients.iter().rev().fold(Rational::new(), |sum, &c| {
+        sum * &t + Rational::from_f64(c).unwrap()
+    })
 }
 
 fn check_absolute(coefficients: &[f64], tail: f64, tightness: f64) -> Extremes {
-    let target = Target { numerator: polynomial(coefficients), tail, divisor: Divisor::One };
+    let target = Target {
+        numerator: polynomial(coefficients),
+        tail,
+        divisor: Divisor::One,
+    };
     let found = extremes(&target, &region(tightness)).unwrap();
     for k in 0..=400 {
         let t = -1.0 + f64::from(k) / 200.0;
         let value = exact_value(coefficients, t);
         let above = Rational::from(&value + Rational::from_f64(tail).unwrap());
         let below = Rational::from(&value - Rational::from_f64(tail).unwrap());
-        assert!(above <= found.maximum.upper, "{coefficients:?} exceeds its maximum at {t}");
-        assert!(below >= found.minimum.lower, "{coefficients:?} is below its minimum at {t}");
+        assert!(
+            above <= found.maximum.upper,
+            "{coefficients:?} exceeds its maximum at {t}"
+        );
+        assert!(
+            below >= found.minimum.lower,
+            "{coefficients:?} is below its minimum at {t}"
+        );
     }
     // What is said to be reached is reached.
     let reached = exact_value(coefficients, found.maximum.at) - Rational::from_f64(tail).unwrap();
@@ -118,18 +133,30 @@ fn a_vanishing_divisor_is_found_and_not_divided_by() {
     let target = Target {
         numerator: polynomial(&[1.0]),
         tail: 0.0,
-        divisor: Divisor::Reference { polynomial: polynomial(&[-0.25, 1.0]), tail: 0.0 },
+        divisor: Divisor::Reference {
+            polynomial: polynomial(&[-0.25, 1.0]),
+            tail: 0.0,
+        },
     };
     let outcome = extremes(&target, &region(1e-3));
-    let Err(NoExtremes::DivisorMayVanish(t)) = outcome else { panic!("{outcome:?}") };
+    let Err(NoExtremes::DivisorMayVanish(t)) = outcome else {
+        panic!("{outcome:?}")
+    };
     assert!((t - 0.25).abs() < 1e-9);
 }
 
 #[test]
 fn samples_stay_inside_the_inner_region() {
     // Rising on the whole: the maximum over the outer region is at 1, which the set does not hold.
-    let target = Target { numerator: polynomial(&[0.0, 1.0]), tail: 0.0, divisor: Divisor::One };
-    let region = Region { inner: Some([-1.0, 0.5]), ..region(1e-3) };
+    let target = Target {
+        numerator: polynomial(&[0.0, 1.0]),
+        tail: 0.0,
+        divisor: Divisor::One,
+    };
+    let region = Region {
+        inner: Some([-1.0, 0.5]),
+        ..region(1e-3)
+    };
     let found = extremes(&target, &region).unwrap();
     assert!(found.maximum.lower <= 0.5 && found.maximum.at <= 0.5);
     assert!(found.maximum.upper >= 1.0);

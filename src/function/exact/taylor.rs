@@ -266,7 +266,7 @@ pub(super) fn power(u: &[Known], exponent: &Rational, value: Known) -> Taylor {
     for k in 1..u.len() {
         let mut total = zero();
         for j in 1..=k {
-            let weight = Rational::from(exponent * Rational::from(j)) - Rational::from(k - j);
+            let weight = exponent * Rational::from(j) - Rational::from(k - j);
             total = sum(
                 &total,
                 &times_rational(&multiple(&u[j], &result[k - j]), &weight),

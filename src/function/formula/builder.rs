@@ -22,6 +22,7 @@ pub struct FormulaBuilder {
     text: String,
     operations: Vec<Operation>,
     spans: Vec<Range<usize>>,
+    /// Where the value of each operation stands, folded ones included.
     positions: HashMap<Operation, NodeId>,
 }
 
@@ -44,13 +45,23 @@ impl FormulaBuilder {
     /// they are, for the evaluator to refuse. No other law of algebra is applied: `x - x` keeps
     /// the domain of `x`.
     pub fn push(&mut self, operation: Operation, span: Range<usize>) -> NodeId {
-        let operation = match self.fold(&operation) {
-            Some(value) => Operation::Rational(value),
-            None => operation,
-        };
         if let Some(&position) = self.positions.get(&operation) {
             return position;
         }
+        let Some(value) = self.fold(&operation) else {
+            return self.append(operation, span);
+        };
+        let constant = Operation::Rational(value);
+        let position = match self.positions.get(&constant) {
+            Some(&position) => position,
+            None => self.append(constant, span),
+        };
+        // The same arithmetic is not done twice.
+        self.positions.insert(operation, position);
+        position
+    }
+
+    fn append(&mut self, operation: Operation, span: Range<usize>) -> NodeId {
         let position = self.operations.len();
         self.positions.insert(operation.clone(), position);
         self.operations.push(operation);
@@ -79,39 +90,14 @@ impl FormulaBuilder {
     /// The same, and for each position that [`push`](Self::push) returned the position in the
     /// formula, or `None` if the operation was not needed.
     pub fn finish_with_positions(self, root: NodeId) -> (Formula, Vec<Option<NodeId>>) {
-        let mut needed = vec![false; self.operations.len()];
-        needed[root] = true;
-        // Operands come first, so one pass from the end reaches everything.
-        for position in (0..=root).rev() {
-            if needed[position] {
-                for operand in operands(&self.operations[position]) {
-                    needed[operand] = true;
-                }
-            }
-        }
-        let mut operations = Vec::new();
-        let mut spans = Vec::new();
-        let mut positions = vec![None; self.operations.len()];
-        for (position, (operation, span)) in self.operations.into_iter().zip(self.spans).enumerate()
-        {
-            if needed[position] {
-                positions[position] = Some(operations.len());
-                operations.push(moved(operation, |operand| {
-                    positions[operand].unwrap_or(operand)
-                }));
-                spans.push(span);
-            }
-        }
-        let root = positions[root].unwrap_or(root);
-        (
-            Formula {
-                operations,
-                spans,
-                root,
-                text: self.text,
-            },
-            positions,
-        )
+        let needed = needed(&self.operations, root);
+        let everything = Formula {
+            operations: self.operations,
+            spans: self.spans,
+            root,
+            text: self.text,
+        };
+        everything.restricted(root, &needed)
     }
 
     /// The exact value of an operation on rational constants, if it has one that is kept.
@@ -153,6 +139,21 @@ fn integer_power(base: &Rational, exponent: i32) -> Option<Rational> {
     (least_bits < u64::from(FOLDED_BITS)).then(|| base.pow(exponent).into())
 }
 
+/// Which operations the value of `root` needs, itself included.
+pub(super) fn needed(operations: &[Operation], root: NodeId) -> Vec<bool> {
+    let mut needed = vec![false; operations.len()];
+    needed[root] = true;
+    // Operands come first, so one pass from the end reaches everything.
+    for position in (0..=root).rev() {
+        if needed[position] {
+            for operand in operands(&operations[position]) {
+                needed[operand] = true;
+            }
+        }
+    }
+    needed
+}
+
 /// The operands of an operation.
 fn operands(operation: &Operation) -> impl Iterator<Item = NodeId> {
     let (first, second) = match *operation {
@@ -171,7 +172,7 @@ fn operands(operation: &Operation) -> impl Iterator<Item = NodeId> {
 }
 
 /// The operation with other positions of its operands.
-fn moved(operation: Operation, to: impl Fn(NodeId) -> NodeId) -> Operation {
+pub(super) fn moved(operation: Operation, to: impl Fn(NodeId) -> NodeId) -> Operation {
     match operation {
         Operation::Variable | Operation::Rational(_) | Operation::Pi => operation,
         Operation::Negate(a) => Operation::Negate(to(a)),

@@ -177,6 +177,10 @@ impl Parser<'_> {
             )?;
             return Ok(true);
         }
+        if Callable::from_name(name).is_some() {
+            let advice = format!("write {name}(...) with its arguments in parentheses");
+            return Err(SyntaxError::new(span, format!("`{name}` is a function")).advise(advice));
+        }
         self.emit_operand(Element::Name(name.to_string()), span)?;
         if self.tokens.continues_with('[')
             && let Some((_, bracket)) = self.tokens.next()?

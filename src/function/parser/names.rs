@@ -86,7 +86,7 @@ pub fn is_reserved(name: &str) -> bool {
 }
 
 /// Names from elsewhere, and how they are written here.
-const ELSEWHERE: [(&str, &str); 44] = [
+const ELSEWHERE: [(&str, &str); 41] = [
     ("ln", "write log"),
     ("loge", "write log"),
     ("lg", "write log10, or log2 where the base is 2"),
@@ -128,9 +128,6 @@ const ELSEWHERE: [(&str, &str); 44] = [
     ("sh", "write sinh"),
     ("ch", "write cosh"),
     ("th", "write tanh"),
-    ("math", "write the function without the name of its module"),
-    ("np", "write the function without the name of its module"),
-    ("std", "write the function without the name of its module"),
 ];
 
 /// Numbers from elsewhere, by their names in `<math.h>`, Rust and mathematics.
@@ -162,6 +159,9 @@ const COMPARED_LENGTH: usize = 32;
 
 /// Advice about a name before parentheses that no function has.
 pub(super) fn advise_function(name: &str) -> Option<String> {
+    if predefined(name).is_some() {
+        return Some("write * for a product".into());
+    }
     let elsewhere = ELSEWHERE.into_iter().find(|(other, _)| *other == name);
     if let Some((_, advice)) = elsewhere {
         return Some(advice.into());
@@ -188,11 +188,6 @@ pub(super) fn advise_number<'a>(
         .find(|(other, _)| *other == name)
     {
         return Some(advice.into());
-    }
-    if Callable::from_name(name).is_some() {
-        return Some(format!(
-            "write {name}(...) with its arguments in parentheses"
-        ));
     }
     if let Some((_, advice)) = ELSEWHERE.into_iter().find(|(other, _)| *other == name) {
         return Some(advice.into());

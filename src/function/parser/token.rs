@@ -174,7 +174,7 @@ fn stray_character(start: usize, character: char) -> SyntaxError {
         '%' => "write the remainder as a difference, or the number without the percent sign",
         ';' => "leave the semicolon out",
         '=' => "write only the expression for the value",
-        ':' => "leave std:: and the like out",
+        ':' | '.' => "leave std::, math. and the like out",
         '<' | '>' | '?' | '&' | '!' | '~' => {
             return SyntaxError::new(
                 span,

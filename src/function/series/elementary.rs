@@ -9,7 +9,7 @@ use crate::function::series::power_series::{Arithmetic, PowerSeries};
 use crate::number::ball::Ball;
 
 /// The cost of a value of an elementary function in ball multiplications, roughly.
-pub(super) const ELEMENTARY_WORK: u64 = 20;
+const ELEMENTARY_WORK: u64 = 20;
 
 /// Why a function has no power series at the centre.
 #[derive(Clone, Copy, Debug)]
@@ -162,22 +162,26 @@ impl Arithmetic {
                 Ok(self.tangent(u, value, derivative, false))
             }
             // y' = u'/sqrt((1 - u)(1 + u)); the product does not cancel near the ends.
-            Function::Asin => {
-                let root = self.root_of_product((&one, u), (&one, u))?;
-                self.integral_of_quotient(u, &root, value)
-                    .ok_or_else(not_analytic)
+            Function::Asin | Function::Acos => {
+                let (below, above) = (self.subtract(&one, u), self.add(&one, u));
+                let radicand = self.product(&below, &above);
+                let root = self.positive_root(&radicand)?;
+                let arcsine = self
+                    .integral_of_quotient(u, &root, value.clone())
+                    .ok_or_else(not_analytic)?;
+                Ok(if function == Function::Asin {
+                    arcsine
+                } else {
+                    self.negate(&arcsine).with_value(value)
+                })
             }
-            Function::Acos => {
-                let root = self.root_of_product((&one, u), (&one, u))?;
-                let negative = self.negate(u);
-                self.integral_of_quotient(&negative, &root, value)
-                    .ok_or_else(not_analytic)
-            }
-            // y' = u'/sqrt((u - 1)(u + 1))
+            // y' = u'/(sqrt(u - 1) sqrt(u + 1)): the powers -1/2 of the two factors and their
+            // product lose less than a root of the product and a division by it.
             Function::Acosh => {
-                let root = self.root_of_product((u, &one), (u, &one))?;
-                self.integral_of_quotient(u, &root, value)
-                    .ok_or_else(not_analytic)
+                let below = self.inverse_root(&self.subtract(u, &one))?;
+                let above = self.inverse_root(&self.add(u, &one))?;
+                let derivative = self.product(&below, &above);
+                Ok(self.integral_of_product(u, &derivative, value))
             }
             // y' = u'/(1 + u^2)
             Function::Atan => {
@@ -189,8 +193,7 @@ impl Arithmetic {
             // y' = u'/sqrt(1 + u^2)
             Function::Asinh => {
                 let square = self.square(u);
-                let radicand = self.add(&one, &square);
-                let root = self.positive_root(&radicand)?;
+                let root = self.positive_root(&self.add(&one, &square))?;
                 self.integral_of_quotient(u, &root, value)
                     .ok_or_else(not_analytic)
             }
@@ -217,6 +220,22 @@ impl Arithmetic {
                 Ok(self.rotations(function, u, &operand).0)
             }
         }
+    }
+
+    /// u^n for an integer n < 0.
+    pub(super) fn power_negative(
+        &mut self,
+        u: &PowerSeries,
+        exponent: i32,
+    ) -> Result<PowerSeries, Obstacle> {
+        let base = u.coefficient(0, self.precision);
+        let pole = || Obstacle::new(RefusalKind::DivisionByZero, base.is_exact_zero());
+        let value = base.pow_integer(i64::from(exponent)).ok_or_else(pole)?;
+        if u.is_constant() {
+            return Ok(PowerSeries::constant(value));
+        }
+        let exponent = Ball::from_i64(i64::from(exponent), self.precision);
+        self.power(u, &exponent, value).ok_or_else(pole)
     }
 
     /// u^r for a rational r that is not an integer, u > 0; its value also for u = 0 and r > 0.
@@ -298,31 +317,31 @@ impl Arithmetic {
         Ok(self.exponential(&exponent, value))
     }
 
-    /// sqrt((a - b)(c + d)) for a product that is positive at the centre.
-    fn root_of_product(
-        &mut self,
-        difference: (&PowerSeries, &PowerSeries),
-        sum: (&PowerSeries, &PowerSeries),
-    ) -> Result<PowerSeries, Obstacle> {
-        let below = self.subtract(difference.0, difference.1);
-        let above = self.add(sum.0, sum.1);
-        let radicand = self.product(&below, &above);
-        self.positive_root(&radicand)
+    /// sqrt(u) for u that is positive at the centre.
+    fn positive_root(&mut self, u: &PowerSeries) -> Result<PowerSeries, Obstacle> {
+        let obstacle = Obstacle::unproved(RefusalKind::NotAnalytic);
+        let radicand = u.coefficient(0, self.precision);
+        if !radicand.is_positive() {
+            return Err(obstacle);
+        }
+        let value = radicand.sqrt().ok_or(obstacle)?;
+        self.square_root(u, value).ok_or(obstacle)
     }
 
-    fn positive_root(&mut self, radicand: &PowerSeries) -> Result<PowerSeries, Obstacle> {
-        let value = radicand.coefficient(0, self.precision);
-        if !value.is_positive() {
-            return Err(Obstacle::unproved(RefusalKind::NotAnalytic));
+    /// 1/sqrt(u) for u that is positive at the centre.
+    fn inverse_root(&mut self, u: &PowerSeries) -> Result<PowerSeries, Obstacle> {
+        let obstacle = Obstacle::unproved(RefusalKind::NotAnalytic);
+        let radicand = u.coefficient(0, self.precision);
+        if !radicand.is_positive() {
+            return Err(obstacle);
         }
-        let root = value
+        let one = Ball::one(self.precision);
+        let value = radicand
             .sqrt()
-            .ok_or(Obstacle::unproved(RefusalKind::NotAnalytic))?;
-        if radicand.is_constant() {
-            return Ok(PowerSeries::constant(root));
-        }
-        self.square_root(radicand, root)
-            .ok_or(Obstacle::unproved(RefusalKind::NotAnalytic))
+            .and_then(|root| one.div(&root))
+            .ok_or(obstacle)?;
+        let exponent = one.mul_power_of_two(-1).neg();
+        self.power(u, &exponent, value).ok_or(obstacle)
     }
 }
 

@@ -3,10 +3,14 @@
 //! A series is in powers of t; ' is the derivative with respect to t. Each elementary function y of
 //! a series u satisfies a differential equation of first order in which the coefficient of t^(k-1)
 //! determines y_k from y_0, ..., y_{k-1}; with s_j = j u_j = (t u')_j the sums below follow. The
-//! constant term y_0 comes from the function of a ball. All operations cost O(n^2) or, for a
-//! polynomial u of degree d, O(d n) multiplications. Sources (from memory): Knuth, The Art of
+//! constant term y_0 comes from the function of a ball. All operations cost O(n^2) or, where u is a
+//! polynomial of degree d, mostly O(d n) multiplications. Sources (from memory): Knuth, The Art of
 //! Computer Programming, vol. 2, section 4.7 (division, Miller's recurrence for powers); Brent and
 //! Kung, Fast algorithms for manipulating formal power series, J. ACM 25 (1978), 581-595.
+//!
+//! The radii follow the recurrences with absolute values: they are about 2^-precision times the
+//! coefficients of a majorant, for u/v of 1/(|v_0| - |v_1| t - |v_2| t^2 - ...), which may grow
+//! faster than the true coefficients by a few bits a term.
 
 use crate::number::ball::Ball;
 
@@ -201,11 +205,11 @@ impl Arithmetic {
     /// sum v_j v_{k-j} over first <= j <= k - first; the products of a pair are taken once.
     fn square_term(&mut self, v: &[Ball], k: usize, first: usize) -> Ball {
         let mut total = self.zero();
-        if k >= first + 1 {
+        if k > first {
             self.accumulate(&mut total, v, v, k, (first, (k - 1) / 2));
         }
         total = total.mul_power_of_two(1);
-        if k % 2 == 0
+        if k.is_multiple_of(2)
             && k / 2 >= first
             && let Some(middle) = v.get(k / 2)
             && !middle.is_exact_zero()
@@ -402,10 +406,12 @@ impl Arithmetic {
     }
 
     /// y = u^r by Miller's recurrence: u y' = r u' y, so
-    /// k u_0 y_k = sum_{j=1..k} (r j - (k - j)) u_j y_{k-j}
-    ///           = sum_{j=1..k} (r s_j) y_{k-j} - sum_{j=1..k} u_j ((k-j) y_{k-j}).
+    /// k u_0 y_k = sum_{j=1..k} (r s_j - (k - j) u_j) y_{k-j}.
     /// `None` if u_0 contains 0. Valid for every real solution of the differential equation, so
     /// also for the real cube root of a negative u.
+    ///
+    /// The factor of y_{k-j} is formed first: two sums, one over r s_j y_{k-j}, cost as much, but
+    /// enlarge the radius of y_{k-j} by the sum of the two parts where they nearly cancel.
     pub(super) fn power(
         &mut self,
         u: &PowerSeries,
@@ -415,17 +421,21 @@ impl Arithmetic {
         let inverse = Ball::one(self.precision).div(u.coefficients.first()?)?;
         let scaled: Vec<Ball> = u.slopes().iter().map(|slope| slope.mul(exponent)).collect();
         let known = u.known.min(self.terms);
-        let mut result = Vec::with_capacity(known);
-        let mut slopes = Vec::with_capacity(known);
+        let mut result: Vec<Ball> = Vec::with_capacity(known);
         result.push(value);
-        slopes.push(self.zero());
         for k in 1..known {
             let mut total = self.zero();
-            self.accumulate(&mut total, &scaled, &result, k, (1, k));
-            self.diminish(&mut total, &u.coefficients, &slopes, k);
+            for j in 1..=k.min(u.coefficients.len() - 1) {
+                let rest = (k - j) as i64;
+                if !u.coefficients[j].is_exact_zero() && !result[k - j].is_exact_zero() {
+                    let mut weight = u.coefficients[j].mul_integer(-rest);
+                    weight.add_assign(&scaled[j]);
+                    total.add_product(&weight, &result[k - j]);
+                    self.work += 2;
+                }
+            }
             total.mul_assign(&inverse);
             result.push(total.div_integer(k as u64));
-            slopes.push(total);
         }
         self.work += known as u64;
         Some(PowerSeries::new(result, known))

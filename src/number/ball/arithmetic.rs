@@ -1,16 +1,26 @@
 //! Field operations. All work at the larger of the two precisions, except the operations that
 //! assign, which keep the precision of the ball they assign to.
 
+use std::cell::RefCell;
+use std::cmp::Ordering;
+
 use rug::float::Round;
-use rug::ops::{AddAssignRound, DivAssignRound, MulAssignRound, NegAssign, SubAssignRound};
+use rug::ops::{
+    AddAssignRound, AssignRound, DivAssignRound, MulAssignRound, NegAssign, SubAssignRound,
+};
 use rug::{Assign, Float};
 
-use super::{Ball, GUARD_BITS};
+use super::{Ball, GUARD_BITS, rounding_term};
 use crate::number::radius::Radius;
 
 /// A radius below 2^-10 of the midpoint counts as narrow: first-order bounds overestimate a narrow
 /// argument's part by less than a thousandth, and cost less than evaluating the two ends.
 const NARROW: i64 = -10;
+
+thread_local! {
+    /// Working memory of [`Ball::add_product`].
+    static PRODUCT: RefCell<Float> = RefCell::new(Float::new(64));
+}
 
 impl Ball {
     /// {x + y}: |(x + y) - (m + n)| <= r + s for |x - m| <= r, |y - n| <= s.
@@ -175,32 +185,55 @@ impl Ball {
         self.settle(ternary);
     }
 
-    /// self += {x y}, at the precision of this ball: one fused multiplication and addition, one
-    /// rounding, no allocation for equal precisions. The bound is that of [`mul`](Self::mul) plus the
-    /// radius.
+    /// self += {x y}, at the precision of this ball. The bound is that of [`mul`](Self::mul) plus the
+    /// radius and the errors of the two roundings.
+    ///
+    /// This is the step of a convolution of series. It does not allocate, and all the parts of the
+    /// radius are summed and rounded at once. MPFR's product into working memory and sum, all of equal
+    /// precisions, take less time than its fused operation (half at 64 bits, nine tenths at 512).
     #[inline]
     pub fn add_product(&mut self, left: &Self, right: &Self) {
-        if left.is_exact_zero() || right.is_exact_zero() {
-            return;
-        }
-        self.radius = self.radius.add(left.product_error(right));
-        let ternary = self
-            .midpoint
-            .add_assign_round(&left.midpoint * &right.midpoint, Round::Nearest);
-        self.settle(ternary);
+        self.accumulate(left, right, |sum, product| {
+            sum.add_assign_round(product, Round::Nearest)
+        });
     }
 
     /// self -= {x y}, as [`add_product`](Self::add_product).
     #[inline]
     pub fn sub_product(&mut self, left: &Self, right: &Self) {
+        self.accumulate(left, right, |sum, product| {
+            sum.sub_assign_round(product, Round::Nearest)
+        });
+    }
+
+    #[inline]
+    fn accumulate<F>(&mut self, left: &Self, right: &Self, combine: F)
+    where
+        F: Fn(&mut Float, &Float) -> Ordering,
+    {
         if left.is_exact_zero() || right.is_exact_zero() {
             return;
         }
-        self.radius = self.radius.add(left.product_error(right));
-        let ternary = self
-            .midpoint
-            .sub_assign_round(&left.midpoint * &right.midpoint, Round::Nearest);
-        self.settle(ternary);
+        PRODUCT.with_borrow_mut(|product| {
+            if product.prec() != self.precision() {
+                product.set_prec(self.precision());
+            }
+            let ternary = product.assign_round(&left.midpoint * &right.midpoint, Round::Nearest);
+            let product_error = rounding_term(product, ternary);
+            let ternary = combine(&mut self.midpoint, product);
+            let sum_error = rounding_term(&self.midpoint, ternary);
+            let m = Radius::of_float_near_upper(&left.midpoint);
+            let n = Radius::of_float_near_upper(&right.midpoint);
+            self.radius = Radius::sum([
+                self.radius.term(),
+                m.term_of_product(right.radius),
+                n.term_of_product(left.radius),
+                left.radius.term_of_product(right.radius),
+                product_error,
+                sum_error,
+            ]);
+        });
+        self.settle(Ordering::Equal);
     }
 
     /// {k x}: |k x - k m| <= |k| r.
@@ -257,18 +290,16 @@ impl Ball {
     /// |m| s + |n| r + r s, the distance of the products from the product of the midpoints.
     #[inline]
     fn product_error(&self, other: &Self) -> Radius {
-        match (self.radius.is_zero(), other.radius.is_zero()) {
-            (true, true) => Radius::ZERO,
-            (true, false) => Radius::of_float_upper(&self.midpoint).mul(other.radius),
-            (false, true) => Radius::of_float_upper(&other.midpoint).mul(self.radius),
-            (false, false) => {
-                let left = Radius::of_float_upper(&self.midpoint);
-                let right = Radius::of_float_upper(&other.midpoint);
-                left.add(self.radius)
-                    .mul(other.radius)
-                    .add(right.mul(self.radius))
-            }
+        if self.is_exact() && other.is_exact() {
+            return Radius::ZERO;
         }
+        let m = Radius::of_float_near_upper(&self.midpoint);
+        let n = Radius::of_float_near_upper(&other.midpoint);
+        Radius::sum([
+            m.term_of_product(other.radius),
+            n.term_of_product(self.radius),
+            self.radius.term_of_product(other.radius),
+        ])
     }
 
     fn quotient_of_ends(&self, divisor: &Self, precision: u32) -> Self {

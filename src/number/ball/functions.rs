@@ -1,8 +1,8 @@
 //! Elementary functions that are monotone, or even and monotone in |x|.
 //!
 //! An exact argument costs one evaluation, rounded to nearest. For any other argument [a, b] the
-//! function is evaluated at the two ends, which are rounded outward to 32 more bits than the ball
-//! has, and the values are rounded outward too: for an increasing f, f(a) rounded down and f(b)
+//! function is evaluated at the two ends, which are rounded outward to at least 32 more bits
+//! than the ball has, and the values are rounded outward too: for an increasing f, f(a) rounded down and f(b)
 //! rounded up enclose f([a, b]), and nothing is lost but rounding. MPFR rounds these functions
 //! correctly in every direction.
 //!
@@ -231,8 +231,24 @@ impl Ball {
     }
 
     /// The ends of the ball, rounded outward at the precision at which functions are evaluated.
+    ///
+    /// That precision keeps 16 bits of the radius, so that rounding the ends widens the ball by
+    /// 2^-15 of itself, and at least the guard bits. A radius far below the square of the last place,
+    /// 2^-2p, counts as 2^-2p 2^-64: where a function cancels, as the logarithm near 1, the distance
+    /// of another midpoint of p bits from the zero is at least 2^-p, and so p bits of the value
+    /// remain.
     pub(super) fn ends(&self) -> (Float, Float) {
-        let work = self.precision().saturating_add(GUARD_BITS);
+        let precision = self.precision();
+        let guarded = precision.saturating_add(GUARD_BITS);
+        let longest = precision.saturating_mul(2).saturating_add(2 * GUARD_BITS);
+        let work = match (self.midpoint.get_exp(), self.radius.binary_exponent()) {
+            (Some(midpoint), Some(radius)) => {
+                let bits = i64::from(midpoint) - radius + 16;
+                bits.clamp(i64::from(guarded), i64::from(longest)) as u32
+            }
+            _ => guarded,
+        };
+        let work = work.min(rug::float::prec_max());
         (self.lower_at(work), self.upper_at(work))
     }
 

@@ -82,7 +82,7 @@ impl Ball {
 /// and rounded so that its error has the wanted sign, and exact where its value is representable.
 /// Any other q is enclosed in [q-, q+], and x^q lies between x^(q-) and x^(q+), the latter being
 /// the larger for x >= 1 and the smaller for x < 1.
-fn rational_power(base: &Float, exponent: &Rational, round: Round) -> Float {
+pub(super) fn rational_power(base: &Float, exponent: &Rational, round: Round) -> Float {
     let mut value = base.clone();
     if let (Some(power), Some(root)) = (small(exponent.numer()), small(exponent.denom()))
         && base

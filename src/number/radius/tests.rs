@@ -87,6 +87,12 @@ proptest! {
     #[test]
     fn roots_powers_and_shifts_are_tight(a in radius(), power in 0u32..20, shift in -90i64..90) {
         let x = exact(a);
+        if let Some(exponent) = a.binary_exponent() {
+            let above = Rational::from(1) << exponent as i32;
+            prop_assert!(x < above && x >= above / 2u32);
+        } else {
+            prop_assert!(a.is_zero());
+        }
         let root = exact(a.sqrt());
         let square = Rational::from(&root * &root);
         prop_assert!(square >= x);
