@@ -9,3 +9,6 @@ pub mod parser;
 pub mod range;
 pub mod refusal;
 pub mod series;
+
+#[cfg(test)]
+mod random;

@@ -49,7 +49,7 @@ pub enum NoDisc {
 /// Arcs of the upper half circle on which |f| is bounded, few at first. Where the enclosures of a
 /// product of large and small factors (exp(x*x)*erfc(x)), or of a function that turns quickly
 /// (log(erfc(x))), are too wide, narrower arcs help.
-const ARCS: [usize; 3] = [8, 64, 512];
+const ARCS: [usize; 3] = [8, 64, 256];
 
 /// A bound that is this many bits above what the coefficients suggest has grown for want of arcs,
 /// or because rho is too large.
@@ -104,7 +104,13 @@ pub fn disc_for(
     target: f64,
     work: &mut u64,
 ) -> Result<Disc, NoDisc> {
-    let mut search = DiscSearch { formula, centre, scale, coefficients, work };
+    let mut search = DiscSearch {
+        formula,
+        centre,
+        scale,
+        coefficients,
+        work,
+    };
     let start = promising_log2_rho(coefficients);
     let mut refused = NoDisc::TooSlow;
     for &arcs in &ARCS[..2] {
@@ -168,7 +174,9 @@ impl DiscSearch<'_> {
             if !(SMALLEST_LOG2_RHO..=LARGEST_LOG2_RHO).contains(&log2_rho) {
                 break;
             }
-            let Ok(next) = self.attempt(log2_rho, arcs) else { break };
+            let Ok(next) = self.attempt(log2_rho, arcs) else {
+                break;
+            };
             let next_tail = self.tail_of(&next);
             if next_tail >= tail {
                 break;
@@ -176,9 +184,13 @@ impl DiscSearch<'_> {
             (best, tail) = (next, next_tail);
         }
         while tail > target && self.is_excessive(&best) {
-            let Some(&more) = ARCS.iter().find(|&&more| more > arcs) else { break };
+            let Some(&more) = ARCS.iter().find(|&&more| more > arcs) else {
+                break;
+            };
             arcs = more;
-            let Ok(next) = self.attempt(steering::log2_of(&best.rho), arcs) else { break };
+            let Ok(next) = self.attempt(steering::log2_of(&best.rho), arcs) else {
+                break;
+            };
             let next_tail = self.tail_of(&next);
             let gained = next_tail < tail - 4.0;
             (best, tail) = (next, next_tail);
@@ -196,7 +208,12 @@ fn logarithms(coefficients: &[Ball]) -> impl Iterator<Item = (f64, f64)> + '_ {
         .iter()
         .enumerate()
         .filter(|(_, c)| !c.is_exact_zero())
-        .map(|(k, c)| (k as f64, steering::log2_of(&c.magnitude_upper().to_float_upper(53))))
+        .map(|(k, c)| {
+            (
+                k as f64,
+                steering::log2_of(&c.magnitude_upper().to_float_upper(53)),
+            )
+        })
 }
 
 /// log2 of the largest rho at which the largest |f_k| rho^k still has k <= 0.7 terms.

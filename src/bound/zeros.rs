@@ -43,6 +43,11 @@ pub fn exact_zero(
     let width = (right - left).complete();
     let margin = width / BESIDE;
     let (left, right) = (&(left - &margin).complete(), &(right + &margin).complete());
+    // Most refusals come from a zero elsewhere, off the real line or beyond the margin.
+    let over = WideInterval::from_rationals(left, right, 64);
+    if range(&function, &over).is_ok_and(|values| !values.contains_zero()) {
+        return None;
+    }
     candidates(&function, left, right)
         .into_iter()
         .find_map(|centre| {
@@ -59,7 +64,10 @@ pub fn leading_zeros(formula: &Formula, centre: &Centre) -> usize {
     let root = formula.root();
     // The value alone is cheap and settles most candidates.
     let value = leading_coefficients(formula, centre, 1).swap_remove(root);
-    if !value.first().is_some_and(|c| c.as_ref().is_some_and(Exact::is_zero)) {
+    if !value
+        .first()
+        .is_some_and(|c| c.as_ref().is_some_and(Exact::is_zero))
+    {
         return 0;
     }
     let all = leading_coefficients(formula, centre, MOST_ORDER);
