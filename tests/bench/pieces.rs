@@ -10,6 +10,8 @@ use std::time::Instant;
 
 use boundmark::audit::file::{self, ReadOptions};
 use boundmark::audit::run;
+use boundmark::number::decimal::exact;
+use rug::Rational;
 
 /// A table to audit, and a double-precision evaluation of its error for the reference.
 struct Job {
@@ -79,7 +81,7 @@ fn interpolated(
         let coefficients = newton_to_powers(&nodes, &values);
         let from = format!("{}/{count}", fraction(domain, k, count));
         let to = format!("{}/{count}", fraction(domain, k + 1, count));
-        let list: Vec<String> = coefficients.iter().map(|c| format!("\"{c:e}\"")).collect();
+        let list: Vec<String> = coefficients.iter().map(|&c| literal(c)).collect();
         let comma = if k == 0 { "" } else { "," };
         write!(
             pieces,
@@ -105,6 +107,14 @@ fn interpolated(
         pieces: count,
         sample: Box::new(sample),
     }
+}
+
+/// A double as the exact literal that a table of stored coefficients has.
+fn literal(c: f64) -> String {
+    format!(
+        "\"{}\"",
+        exact(&Rational::from_f64(c).expect("a finite coefficient"))
+    )
 }
 
 /// The exact end k/count of an integer domain, as a numerator over `count`.
@@ -168,7 +178,7 @@ fn bernstein() -> Job {
             sum
         })
         .collect();
-    let list: Vec<String> = coefficients.iter().map(|c| format!("\"{c:e}\"")).collect();
+    let list: Vec<String> = coefficients.iter().map(|&c| literal(c)).collect();
     let text = format!(
         "{{\"reference\":{{\"formula\":\"exp(x)\"}},\"approximant\":{{\"basis\":\"bernstein\",\
          \"order\":\"ascending\",\"stored_as\":\"binary64\",\"pieces\":[{{\"on\":[\"0\",\"1\"],\
