@@ -117,7 +117,7 @@ impl Cell {
         let radius = self.radius_around(centre).to_rational().unwrap_or_default();
         let step = Rational::from_f64(t).unwrap_or_default() * radius;
         Centre {
-            rational: Rational::from(&centre.rational + step),
+            rational: (&centre.rational + step),
             pi_multiple: centre.pi_multiple.clone(),
         }
     }

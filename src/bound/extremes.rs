@@ -235,7 +235,8 @@ impl Best {
 /// Encloses minimum and maximum of `target` on `region`.
 ///
 /// A subinterval is settled when its bounds exceed the best values by at most
-/// tightness/2 * max(known, modulus reached here). Everything settled contributes its bounds, so
+/// tightness/2 * max(known, modulus reached here), plus twice the width to which the error is known
+/// at one point. Everything settled contributes its bounds, so
 /// the result holds for every t of the outer region whatever the sample points were.
 pub fn extremes(target: &Target, region: &Region) -> Result<Extremes, NoExtremes> {
     let [start, end] = region.outer;
@@ -285,7 +286,9 @@ pub fn extremes(target: &Target, region: &Region) -> Result<Extremes, NoExtremes
             {
                 best.see(m, bounds.at_midpoint);
             }
-            let allowance = 0.5 * region.tightness * best.modulus().max(region.known);
+            // Bisection cannot make the bounds narrower than the value at one point is known.
+            let allowance = 0.5 * region.tightness * best.modulus().max(region.known)
+                + 2.0 * bounds.at_midpoint.wid();
             let (top, bottom) = match region.inner {
                 Some(_) => (best.maximum, best.minimum),
                 // Without sample points: settle for the size known elsewhere.

@@ -46,8 +46,14 @@ pub enum NoDisc {
     TooSlow,
 }
 
-/// Arcs of the upper half circle on which |f| is bounded.
-const ARCS: usize = 8;
+/// Arcs of the upper half circle on which |f| is bounded, few at first. Where the enclosures of a
+/// product of large and small factors (exp(x*x)*erfc(x)), or of a function that turns quickly
+/// (log(erfc(x))), are too wide, narrower arcs help.
+const ARCS: [usize; 3] = [8, 64, 256];
+
+/// A bound that is this many bits above what the coefficients suggest has grown for want of arcs,
+/// or because rho is too large.
+const EXCESS: f64 = 7.0;
 
 /// log2 of the smallest rho worth using.
 const SMALLEST_LOG2_RHO: f64 = 0.3;
@@ -83,11 +89,13 @@ impl Disc {
 }
 
 /// Finds a disc around `centre` for Cauchy's estimate after `coefficients.len()` terms, where
-/// t = 1 means a distance of `scale`.
+/// t = 1 means a distance of `scale`; the tail should come down to 2^`target`.
 ///
 /// The largest circle on which the last third of the computed terms is not yet the dominant part
 /// is about the best one for an entire function and about the circle of convergence otherwise; it
-/// is approached from a little inside.
+/// is approached from a little inside. A removable singularity beside the cell does not show in
+/// the coefficients, but no disc may contain it: the insets grow until the disc is hardly larger
+/// than the cell.
 pub fn disc_for(
     formula: &Formula,
     centre: &Centre,
@@ -96,77 +104,107 @@ pub fn disc_for(
     target: f64,
     work: &mut u64,
 ) -> Result<Disc, NoDisc> {
+    let mut search = DiscSearch {
+        formula,
+        centre,
+        scale,
+        coefficients,
+        work,
+    };
     let start = promising_log2_rho(coefficients);
     let mut refused = NoDisc::TooSlow;
-    // A removable singularity beside the cell does not show in the coefficients, but no disc may
-    // contain it: the insets grow until the disc is hardly larger than the cell.
-    let mut inset = 0.15;
-    while start - inset >= SMALLEST_LOG2_RHO {
-        let log2_rho = (start - inset).min(LARGEST_LOG2_RHO);
-        match try_disc(formula, centre, scale, log2_rho, work) {
-            Ok(disc) => {
-                return Ok(widened(
-                    formula,
-                    centre,
-                    scale,
-                    disc,
-                    coefficients.len(),
-                    target,
-                    work,
-                ));
+    for &arcs in &ARCS[..2] {
+        let mut inset = 0.15;
+        while start - inset >= SMALLEST_LOG2_RHO {
+            match search.attempt((start - inset).min(LARGEST_LOG2_RHO), arcs) {
+                Ok(disc) => return Ok(search.improved(disc, arcs, target)),
+                Err(refusal) => refused = NoDisc::Refused(refusal),
             }
-            Err(refusal) => refused = NoDisc::Refused(refusal),
+            inset = 1.5 * inset + 0.3;
         }
-        inset = 1.5 * inset + 0.3;
     }
     Err(refused)
 }
 
-/// Tries larger discs while the tail misses its target and a larger disc makes it smaller.
-fn widened(
-    formula: &Formula,
-    centre: &Centre,
-    scale: &Float,
-    mut best: Disc,
-    terms: usize,
-    target: f64,
-    work: &mut u64,
-) -> Disc {
-    for _ in 0..6 {
-        let tail = best.tail(terms);
-        if steering::log2_of(&tail.to_float_upper(53)) <= target {
-            break;
-        }
-        let log2_rho = steering::log2_of(&best.rho) + 0.8;
-        if log2_rho > LARGEST_LOG2_RHO {
-            break;
-        }
-        match try_disc(formula, centre, scale, log2_rho, work) {
-            Ok(larger) if larger.tail(terms) < tail => best = larger,
-            _ => break,
-        }
+/// A search for the best disc of one function.
+struct DiscSearch<'a> {
+    formula: &'a Formula,
+    centre: &'a Centre,
+    scale: &'a Float,
+    coefficients: &'a [Ball],
+    work: &'a mut u64,
+}
+
+impl DiscSearch<'_> {
+    fn attempt(&mut self, log2_rho: f64, arcs: usize) -> Result<Disc, Refusal> {
+        let rho = steering::power_of_two(log2_rho);
+        // 8 bits of rho and at most 30 of the patch radius: the product is exact in 64.
+        let radius = Float::with_val(64, &rho * self.scale);
+        *self.work += (arcs * self.formula.operations().len()) as u64;
+        let magnitude = magnitude_on_disc(self.formula, self.centre, &radius, arcs)?;
+        Ok(Disc { rho, magnitude })
     }
-    best
+
+    /// About log2 of the tail of a disc.
+    fn tail_of(&self, disc: &Disc) -> f64 {
+        steering::log2_of(&disc.tail(self.coefficients.len()).to_float_upper(53))
+    }
+
+    /// True if the bound is far above what the coefficients suggest.
+    fn is_excessive(&self, disc: &Disc) -> bool {
+        let log2_rho = steering::log2_of(&disc.rho);
+        let expected = logarithms(self.coefficients)
+            .map(|(k, log2)| log2 + k * log2_rho)
+            .fold(f64::NEG_INFINITY, f64::max);
+        steering::log2_of(&disc.magnitude.to_float_upper(53)) > expected + EXCESS
+    }
+
+    /// While the tail misses its target: moves rho, to smaller values where the bound has outgrown
+    /// the coefficients and to larger ones otherwise (log M is a convex function of log rho, by
+    /// Hadamard's three circles theorem, so one direction leads to the minimum), then takes
+    /// narrower arcs.
+    fn improved(&mut self, mut best: Disc, mut arcs: usize, target: f64) -> Disc {
+        let mut tail = self.tail_of(&best);
+        let step = if self.is_excessive(&best) { -1.0 } else { 0.8 };
+        for _ in 0..8 {
+            if tail <= target {
+                return best;
+            }
+            let log2_rho = steering::log2_of(&best.rho) + step;
+            if !(SMALLEST_LOG2_RHO..=LARGEST_LOG2_RHO).contains(&log2_rho) {
+                break;
+            }
+            let Ok(next) = self.attempt(log2_rho, arcs) else {
+                break;
+            };
+            let next_tail = self.tail_of(&next);
+            if next_tail >= tail {
+                break;
+            }
+            (best, tail) = (next, next_tail);
+        }
+        while tail > target && self.is_excessive(&best) {
+            let Some(&more) = ARCS.iter().find(|&&more| more > arcs) else {
+                break;
+            };
+            arcs = more;
+            let Ok(next) = self.attempt(steering::log2_of(&best.rho), arcs) else {
+                break;
+            };
+            let next_tail = self.tail_of(&next);
+            let gained = next_tail < tail - 4.0;
+            (best, tail) = (next, next_tail);
+            if !gained {
+                break;
+            }
+        }
+        best
+    }
 }
 
-fn try_disc(
-    formula: &Formula,
-    centre: &Centre,
-    scale: &Float,
-    log2_rho: f64,
-    work: &mut u64,
-) -> Result<Disc, Refusal> {
-    let rho = steering::power_of_two(log2_rho);
-    // 8 bits of rho and at most 30 of the patch radius: the product is exact in 64.
-    let radius = Float::with_val(64, &rho * scale);
-    *work += (ARCS * formula.operations().len()) as u64;
-    let magnitude = magnitude_on_disc(formula, centre, &radius, ARCS)?;
-    Ok(Disc { rho, magnitude })
-}
-
-/// log2 of the largest rho at which the largest |f_k| rho^k still has k <= 0.7 terms.
-fn promising_log2_rho(coefficients: &[Ball]) -> f64 {
-    let logs: Vec<(f64, f64)> = coefficients
+/// k and about log2 |f_k| of the coefficients that are not zero.
+fn logarithms(coefficients: &[Ball]) -> impl Iterator<Item = (f64, f64)> + '_ {
+    coefficients
         .iter()
         .enumerate()
         .filter(|(_, c)| !c.is_exact_zero())
@@ -176,7 +214,11 @@ fn promising_log2_rho(coefficients: &[Ball]) -> f64 {
                 steering::log2_of(&c.magnitude_upper().to_float_upper(53)),
             )
         })
-        .collect();
+}
+
+/// log2 of the largest rho at which the largest |f_k| rho^k still has k <= 0.7 terms.
+fn promising_log2_rho(coefficients: &[Ball]) -> f64 {
+    let logs: Vec<(f64, f64)> = logarithms(coefficients).collect();
     let limit = 0.7 * coefficients.len() as f64;
     let dominated_early = |log2_rho: f64| {
         let mut largest = (f64::NEG_INFINITY, 0.0);

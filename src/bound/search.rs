@@ -390,9 +390,7 @@ impl<'a> Search<'a> {
         }
         let width = (right - left).complete();
         for k in 1..8u32 {
-            places.push(Rational::from(
-                left + Rational::from(&width * Rational::from((k, 8u32))),
-            ));
+            places.push(left + (&width * Rational::from((k, 8u32))));
         }
         for place in places {
             let exact = Centre::rational(place);

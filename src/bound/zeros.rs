@@ -8,10 +8,12 @@ use rug::{Complete, Float, Integer, Rational};
 
 use crate::approximant::piece::Form;
 use crate::bound::shift::shifted;
-use crate::function::exact::{Centre, leading_coefficients};
+use crate::function::exact::{Centre, Exact, leading_coefficients};
 use crate::function::formula::{Formula, NodeId};
+use crate::function::range::range;
 use crate::function::series::series;
 use crate::number::ball::Ball;
+use crate::number::wide_interval::WideInterval;
 
 /// Zeros are sought as far beside an interval as this part of its width.
 const BESIDE: u32 = 16;
@@ -41,6 +43,11 @@ pub fn exact_zero(
     let width = (right - left).complete();
     let margin = width / BESIDE;
     let (left, right) = (&(left - &margin).complete(), &(right + &margin).complete());
+    // Most refusals come from a zero elsewhere, off the real line or beyond the margin.
+    let over = WideInterval::from_rationals(left, right, 64);
+    if range(&function, &over).is_ok_and(|values| !values.contains_zero()) {
+        return None;
+    }
     candidates(&function, left, right)
         .into_iter()
         .find_map(|centre| {
@@ -54,10 +61,19 @@ pub fn exact_zero(
 
 /// Number of leading Taylor coefficients at `centre` that are proved to be exactly zero.
 pub fn leading_zeros(formula: &Formula, centre: &Centre) -> usize {
+    let root = formula.root();
+    // The value alone is cheap and settles most candidates.
+    let value = leading_coefficients(formula, centre, 1).swap_remove(root);
+    if !value
+        .first()
+        .is_some_and(|c| c.as_ref().is_some_and(Exact::is_zero))
+    {
+        return 0;
+    }
     let all = leading_coefficients(formula, centre, MOST_ORDER);
-    all[formula.root()]
+    all[root]
         .iter()
-        .take_while(|c| c.as_ref().is_some_and(|exact| exact.is_zero()))
+        .take_while(|c| c.as_ref().is_some_and(Exact::is_zero))
         .count()
 }
 
@@ -131,7 +147,7 @@ pub fn bracket(
     let sign = |x: &Rational| sign_at(function, x);
     const PARTS: u32 = 16;
     let width = (right - left).complete();
-    let node = |k: u32| Rational::from(left + Rational::from(&width * Rational::from((k, PARTS))));
+    let node = |k: u32| left + (&width * Rational::from((k, PARTS)));
     let mut ends: Option<(Rational, Rational)> = None;
     let mut previous: Option<(Rational, i32)> = None;
     for k in 0..=PARTS {

@@ -124,7 +124,8 @@ mod tests {
         assert_eq!(down(1e-7), "9.99999e-8");
         assert_eq!(down(123.25), "123.25");
         assert_eq!(down(1e20), "1e20");
-        assert_eq!(down(-0.001_25), "-0.00125");
+        assert_eq!(down(-0.125), "-0.125");
+        assert_eq!(down(-0.007_812_5), "-0.0078125");
         assert_eq!(rounded_up(&Float::with_val(53, 1e-7), 6), "1e-7");
         assert_eq!(exact(&Rational::from((3, 4))), "0x1.8p-1");
         assert_eq!(exact(&Rational::from((1, 3))), "1/3");
