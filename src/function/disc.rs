@@ -62,6 +62,9 @@ const PRECISION: u32 = 53;
 /// Bits are added in steps of a machine word, which is what they cost.
 const STEP: u32 = 64;
 
+/// Radii below 2^-SMALL are tried again with more bits.
+const SMALL: i64 = 16;
+
 /// No more bits than this for a small radius.
 const LARGEST_PRECISION: u32 = 4096;
 
@@ -97,7 +100,9 @@ pub fn magnitude_on_disc(
     let result = Circle::new(formula, centre, radius, first).and_then(|c| c.magnitude(arcs));
     // On a small disc a function such as 1 - cos(x) is of the order of r^2, and the difference of
     // its parts has few digits left.
-    let smallness = i64::from(-exponent).max(0);
+    let smallness = Some(i64::from(-exponent))
+        .filter(|&bits| bits >= SMALL)
+        .unwrap_or(0);
     let second = precision(distance.saturating_add(2 * smallness));
     match result {
         Err(refusal) if second > first && !refusal.proved => {

@@ -211,10 +211,7 @@ impl<'a> Circle<'a> {
         let values = &self.values;
         Ok(match &self.formula.operations()[node] {
             Operation::Variable => arc.scaled(&self.radius).add_real(&self.place),
-            Operation::Rational(x) => {
-                Rectangle::from_real(WideInterval::from_rational(x, self.place.precision()))
-            }
-            Operation::Pi => Rectangle::from_real(WideInterval::pi(self.place.precision())),
+            Operation::Rational(_) | Operation::Pi => self.complex(node),
             Operation::Negate(a) => self.complex(*a).neg(),
             Operation::Add(a, b) => values[*a].add(&values[*b]),
             Operation::Subtract(a, b) => values[*a].add(&values[*b].neg()),

@@ -50,7 +50,7 @@ fn point_of(z: &Rectangle, shares: [f64; 2]) -> Exact {
             x.upper().to_rational().unwrap(),
         );
         let share = Rational::from_f64(share).unwrap();
-        Rational::from(&a + Rational::from(&b - &a) * share)
+        Rational::from(&b - &a) * share + a
     };
     [at(&z.real, shares[0]), at(&z.imaginary, shares[1])]
 }

@@ -210,7 +210,7 @@ proptest! {
         let exact = |x: &WideInterval, share: f64| {
             let (a, b) = (x.lower.to_rational().unwrap(), x.upper.to_rational().unwrap());
             let share = Rational::from_f64(share).unwrap();
-            Rational::from(&a + Rational::from(&b - &a) * share)
+            Rational::from(&b - &a) * share + a
         };
         let (a, b) = (exact(&x, shares.0), exact(&y, shares.1));
         prop_assert!(x.add(&y).contains_rational(&Rational::from(&a + &b)));
