@@ -22,6 +22,7 @@ pub mod measure;
 pub mod patch;
 pub mod plain;
 pub mod point;
+pub mod pole;
 pub mod remainder;
 pub mod search;
 pub mod shift;

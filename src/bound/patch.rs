@@ -83,8 +83,6 @@ pub struct Patch {
     pub precision: u32,
     /// Terms used.
     pub terms: usize,
-    /// Work done.
-    pub work: u64,
 }
 
 /// Why a cell could not be modelled by one patch.
@@ -144,13 +142,17 @@ struct Expansion {
 /// With f = F + sigma and p = P + tau on |t| <= 1 (F, P the truncated series, |sigma| and |tau|
 /// bounded by Cauchy's estimate, tau = 0 for a polynomial), the numerator is D = P - F with tail
 /// |tau| + |sigma|. Terms and bits are raised until both the tail and the width of the
-/// coefficients are small against the tolerance.
-pub fn patch(subject: &Subject, frame: &Frame, wish: &Wish) -> Result<Patch, NoPatch> {
-    let mut work = 0;
+/// coefficients are small against the tolerance. Units of work are added to `work`.
+pub fn patch(
+    subject: &Subject,
+    frame: &Frame,
+    wish: &Wish,
+    work: &mut u64,
+) -> Result<Patch, NoPatch> {
     let mut terms = wish.terms.max(degree(subject.form) + 4) + frame.shared_zero;
     let mut precision = wish.precision;
     for _ in 0..24 {
-        let expansion = expand(subject, frame, terms, precision, &mut work)?;
+        let expansion = expand(subject, frame, terms, precision, work)?;
         let mut scaled = Scaled::new(subject.measure, &expansion, frame.shared_zero);
         let goal = match scaled.goal(frame, wish) {
             Goal::Resolved(goal) => goal,
@@ -172,7 +174,7 @@ pub fn patch(subject: &Subject, frame: &Frame, wish: &Wish) -> Result<Patch, NoP
                 &frame.radius,
                 &expansion.reference,
                 target,
-                &mut work,
+                work,
             ),
         )?;
         let second = match (subject.form, &expansion.approximant) {
@@ -184,7 +186,7 @@ pub fn patch(subject: &Subject, frame: &Frame, wish: &Wish) -> Result<Patch, NoP
                     &frame.radius,
                     coefficients,
                     target,
-                    &mut work,
+                    work,
                 ),
             )?),
             _ => None,
@@ -221,7 +223,7 @@ pub fn patch(subject: &Subject, frame: &Frame, wish: &Wish) -> Result<Patch, NoP
             Err(NoExtremes::DivisorMayVanish(t)) => return Err(NoPatch::ReferenceMayVanish(t)),
             Err(NoExtremes::Exhausted) => return Err(NoPatch::Exhausted),
         };
-        work += extremes.work * terms as u64 / 4;
+        *work += extremes.work * terms as u64 / 4;
         let main = match &second {
             Some(second) if approximant_tail > reference_tail => second,
             _ => &disc,
@@ -239,7 +241,6 @@ pub fn patch(subject: &Subject, frame: &Frame, wish: &Wish) -> Result<Patch, NoP
             },
             precision,
             terms,
-            work,
         });
     }
     Err(NoPatch::TooWide)

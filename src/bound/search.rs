@@ -9,6 +9,7 @@ use crate::bound::cell::{Anchor, Cell};
 use crate::bound::patch::{NoPatch, Part, Patch, Remainder, Wish, patch};
 use crate::bound::plain::plain_bounds;
 use crate::bound::point::{Subject, precise_values_at, values_at};
+use crate::bound::pole::undefined_near;
 use crate::bound::unbounded::{Shared, around_zero};
 use crate::bound::zeros::exact_zero;
 use crate::function::exact::Centre;
@@ -96,6 +97,9 @@ const RESULT_PRECISION: u32 = 64;
 
 /// Deepest bisection of a piece.
 const DEEPEST: u32 = 400;
+
+/// Depths at which a refused cell is searched for a pole, which costs more than a refusal.
+const POLE_DEPTHS: [u32; 8] = [0, 1, 3, 6, 12, 24, 48, 96];
 
 /// Depth from which a cell may be covered by its natural interval extension.
 const PLAIN_FROM: u32 = 2;
@@ -187,9 +191,17 @@ impl<'a> Search<'a> {
             }
             self.result.work += 1;
             let frame = cell.frame(&self.task.inner, self.task.owned);
-            match patch(&self.task.subject, &frame, &self.wish) {
+            match patch(
+                &self.task.subject,
+                &frame,
+                &self.wish,
+                &mut self.result.work,
+            ) {
                 Ok(found) => self.merge(&cell, &frame.centre, frame.shared_zero, &found),
-                Err(NoPatch::TooWide | NoPatch::Exhausted) => self.divide(cell, Unfinished::Budget),
+                Err(NoPatch::TooWide | NoPatch::Exhausted) => {
+                    self.look_for_poles(&cell)?;
+                    self.divide(cell, Unfinished::Budget);
+                }
                 Err(NoPatch::Unresolved) => {
                     let at = cell.middle();
                     self.divide(cell, Unfinished::Precision { at });
@@ -204,7 +216,6 @@ impl<'a> Search<'a> {
     }
 
     fn merge(&mut self, cell: &Cell, centre: &Centre, shared_zero: usize, found: &Patch) {
-        self.result.work += found.work;
         self.result.cells[0] += 1;
         if let Some(anchor) = &cell.anchor
             && !self.result.by_continuity.contains(&anchor.centre)
@@ -323,6 +334,12 @@ impl<'a> Search<'a> {
                 return Err(Undefined { at, refusal, part });
             }
         }
+        if POLE_DEPTHS.contains(&cell.depth)
+            && let Some(formula) = self.formula_of(part)
+            && let Some(at) = undefined_near(formula, refusal.node, &cell, &self.task.inner)
+        {
+            return Err(Undefined { at, refusal, part });
+        }
         if refusal.kind == RefusalKind::DivisionByZero
             && cell.anchor.is_none()
             && let Some(formula) = self.formula_of(part)
@@ -340,6 +357,33 @@ impl<'a> Search<'a> {
         }
         let at = cell.middle();
         self.divide(cell, Unfinished::Refused { at, refusal, part });
+        Ok(())
+    }
+
+    /// Slowly decaying coefficients may be the sign of a pole inside the cell.
+    fn look_for_poles(&self, cell: &Cell) -> Result<(), Undefined> {
+        if !POLE_DEPTHS.contains(&cell.depth) || cell.depth < PLAIN_FROM {
+            return Ok(());
+        }
+        for part in [Part::Reference, Part::Approximant] {
+            let Some(formula) = self.formula_of(part) else {
+                continue;
+            };
+            for node in 0..formula.operations().len() {
+                if let Some(at) = undefined_near(formula, node, cell, &self.task.inner) {
+                    let kind = RefusalKind::DivisionByZero;
+                    return Err(Undefined {
+                        at,
+                        refusal: Refusal {
+                            node,
+                            kind,
+                            proved: true,
+                        },
+                        part,
+                    });
+                }
+            }
+        }
         Ok(())
     }
 

@@ -53,7 +53,7 @@ pub fn exact_zero(
         .find_map(|centre| {
             let known = leading_zeros(&function, &centre);
             (known > 0).then(|| ExactZero {
-                order: order_at(&function, &centre, known),
+                order: order_of(&function, &centre, known),
                 centre,
             })
         })
@@ -100,7 +100,9 @@ pub fn coefficients_of_form(form: &Form, centre: &Centre, count: usize) -> Optio
 
 const PROBE_PRECISION: u32 = 256;
 
-fn order_at(function: &Formula, centre: &Centre, known: usize) -> Option<usize> {
+/// `known` as the order of the zero at `centre`, if its first `known` coefficients are zero and the
+/// next one is proved not to be.
+pub fn order_of(function: &Formula, centre: &Centre, known: usize) -> Option<usize> {
     let terms = series(
         function,
         centre,

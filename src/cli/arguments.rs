@@ -40,6 +40,7 @@ The audit file (TOML; the same keys as JSON) names the reference, the approximan
   pieces = [ { on = [\"0\", \"1/8\"], coefficients = [\"1\", \"1\", \"0.5\", \"0x1.5555555555555p-3\"] } ]
 
   [[claims]]
+  of = \"exact\"
   error = \"absolute\"               # absolute | relative | mixed
   at_most = \"1.1e-5\"
 

@@ -160,6 +160,15 @@ impl Formula {
         builder.finish(root)
     }
 
+    /// The function g(f(x)) of this formula f and an elementary function g.
+    #[must_use]
+    pub fn followed_by(mut self, function: Function) -> Self {
+        self.operations.push(Operation::Apply(function, self.root));
+        self.spans.push(self.spans[self.root].clone());
+        self.root = self.operations.len() - 1;
+        self
+    }
+
     /// True if the value does not depend on the variable.
     pub fn is_constant(&self) -> bool {
         !self
