@@ -10,7 +10,8 @@ pub enum Measure {
     /// (p - f)/f; at a zero of f the least E with |p - f| <= E |f| nearby, so it is defined at a
     /// shared zero by continuity and unbounded at a zero that p does not share.
     Relative,
-    /// (p - f)/(A + R |f|) with A > 0 and R >= 0.
+    /// (p - f)/(A + R |f|) with A, R >= 0, not both 0. With A = 0 it has the zeros of f, like the
+    /// relative error.
     Mixed {
         /// A.
         absolute: Rational,

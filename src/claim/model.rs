@@ -24,9 +24,9 @@ pub enum ErrorMeasure {
     Relative,
     /// |p - f| / (A + R |f|).
     Mixed {
-        /// A > 0.
+        /// A >= 0.
         absolute_part: Rational,
-        /// R >= 0.
+        /// R >= 0; A and R are not both 0.
         relative_part: Rational,
     },
 }

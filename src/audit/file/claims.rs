@@ -204,12 +204,12 @@ fn read_mixed(reader: &mut Reader<'_>, table: &Table<'_>) -> Option<ErrorMeasure
     };
     let (absolute_part, relative_part) = (part("absolute_part"), part("relative_part"));
     let (absolute_part, relative_part) = (absolute_part?, relative_part?);
-    if absolute_part.is_zero() {
+    if absolute_part.is_zero() && relative_part.is_zero() {
         reader.error(
             table.at,
-            "the absolute part of the mixed error is 0",
-            "|p-f|/(R|f|) is a relative error",
-            "write error = \"relative\" and at_most = R times the bound",
+            "both parts of the mixed error are 0",
+            "A = R = 0",
+            advice,
         );
         return None;
     }
