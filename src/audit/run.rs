@@ -90,7 +90,7 @@ pub fn run(
                     claim: claim.id.clone(),
                 });
             }
-            let on = on.into_iter().map(|(ends, _)| ends).collect();
+            let on = on.into_iter().map(|interval| interval.on).collect();
             outcomes.push((claim_index, target.approximant, on, first..units.len()));
         }
     }
@@ -153,11 +153,16 @@ fn carry_out(file: &AuditFile, unit: &Unit, effort: &Effort) -> Result<PieceOutc
     })
 }
 
-/// An interval of a claim with the enclosures of its ends.
-type Interval = ([Constant; 2], [End; 2]);
+/// An interval of a claim with the enclosures of its ends, and whether they belong to it.
+struct Interval {
+    on: [Constant; 2],
+    ends: [End; 2],
+    closed: [bool; 2],
+}
 
-/// The set of a claim: `on` without the `except` intervals, as closed intervals in order. (The
-/// supremum over a set and over its closure are the same for a continuous error.)
+/// The set of a claim: `on` without the `except` intervals, as intervals in order. The ends of what
+/// is left out do not belong to the set, so no witness may lie there. (The supremum over a set and
+/// over its closure are the same for a continuous error.)
 fn set_of(target: &Target) -> Result<Vec<Interval>, AuditError> {
     let both = |ends: &[Constant; 2]| Ok::<_, AuditError>((ends.clone(), enclosed(ends)?));
     let mut except = target
@@ -167,23 +172,34 @@ fn set_of(target: &Target) -> Result<Vec<Interval>, AuditError> {
         .collect::<Result<Vec<_>, _>>()?;
     except.sort_by(|(_, a), (_, b)| a[0].low.cmp(&b[0].low));
     let (on, ends) = both(&target.on)?;
-    if except.is_empty() {
-        return Ok(vec![(on, ends)]);
-    }
     let [on_left, on_right] = on;
     let [left_end, right_end] = ends;
-    let mut left = (on_left, left_end);
+    let mut left = (on_left, left_end, true);
+    let mut right_closed = true;
     let mut set = Vec::new();
     for ([from, to], [from_end, to_end]) in except {
-        if from_end.low > left.1.low && from_end.low <= right_end.low {
-            set.push(([left.0.clone(), from], [left.1.clone(), from_end]));
+        // What begins beyond the right end leaves out nothing, and neither does what follows.
+        if from_end.low > right_end.high {
+            break;
         }
-        if to_end.low > left.1.low {
-            left = (to, to_end);
+        if from_end.high > left.1.low && !from_end.equals(&left.1) {
+            set.push(Interval {
+                on: [left.0.clone(), from],
+                ends: [left.1.clone(), from_end],
+                closed: [left.2, false],
+            });
+        }
+        if to_end.low >= left.1.low {
+            right_closed = to_end.high < right_end.low;
+            left = (to, to_end, false);
         }
     }
-    if left.1.low < right_end.low {
-        set.push(([left.0, on_right], [left.1, right_end]));
+    if left.1.low < right_end.high && !left.1.equals(&right_end) {
+        set.push(Interval {
+            on: [left.0, on_right],
+            ends: [left.1, right_end],
+            closed: [left.2, right_closed],
+        });
     }
     Ok(set)
 }
@@ -214,9 +230,15 @@ fn plan<'a>(
         };
         let parts: Vec<Part> = on
             .iter()
-            .filter_map(|(_, [left, right])| {
-                intersection([&ends[0], &ends[1]], owned, [left, right])
-            })
+            .filter_map(
+                |Interval {
+                     ends: claim,
+                     closed,
+                     ..
+                 }| {
+                    intersection([&ends[0], &ends[1]], owned, [&claim[0], &claim[1]], *closed)
+                },
+            )
             .collect();
         if !parts.is_empty() {
             units.push(Unit {

@@ -80,10 +80,10 @@ impl Cell {
         let mut range = [t(left, Round::Up), t(right, Round::Down)];
         let margin = (range[1] - range[0]).abs() / (1u64 << 40) as f64;
         if !owned[0] && !inside(0) {
-            range[0] += margin;
+            range[0] = (range[0] + margin).next_up();
         }
         if !owned[1] && !inside(1) {
-            range[1] -= margin;
+            range[1] = (range[1] - margin).next_down();
         }
         // A cell may hold no representable argument of the set (it covers the end of an
         // irrational domain, say): then it gives upper bounds only.

@@ -420,7 +420,9 @@ impl Scaled {
                 }
             }
         }
-        if frame.seek_zero && weight < heaviest * SMALL_REFERENCE {
+        // Only a relative error gains from dividing a shared zero out: A + R|f| has none.
+        let relative = matches!(self.target.divisor, Divisor::Reference { .. });
+        if relative && frame.seek_zero && weight < heaviest * SMALL_REFERENCE {
             return Goal::MayVanish(lightest_at);
         }
         let goal = reached.max(floor) * wish.tightness / 8.0;
@@ -481,7 +483,8 @@ pub fn local(centre: &Centre, radius: &Float, x: &Rational, round: Round) -> f64
     let scale = radius.to_rational().unwrap_or_else(|| Rational::from(1));
     if centre.pi_multiple.is_zero() {
         let t = (x - &centre.rational).complete() / scale;
-        return Float::with_val_round(53, &t, round).0.to_f64();
+        // Twice in the same direction: a double below the least normal one has fewer bits.
+        return Float::with_val_round(53, &t, round).0.to_f64_round(round);
     }
     let precision = 256;
     let difference = Ball::from_rational(x, precision).sub(&centre.ball(precision));

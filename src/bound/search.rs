@@ -6,6 +6,7 @@ use rug::float::{Round, Special};
 use rug::{Complete, Float, Rational};
 
 use crate::bound::cell::{Anchor, Cell};
+use crate::bound::measure::Measure;
 use crate::bound::patch::{NoPatch, Part, Patch, Remainder, Wish, patch};
 use crate::bound::plain::plain_bounds;
 use crate::bound::point::{Subject, precise_values_at, values_at};
@@ -240,17 +241,23 @@ impl<'a> Search<'a> {
             self.largest = top;
             self.result.remainder = Some(found.remainder.clone());
         }
-        self.cover(low, high);
-        self.reach(
-            scaled(extremes.maximum.lower),
-            || at(extremes.maximum.at),
-            true,
-        );
-        self.reach(
-            scaled(extremes.minimum.upper),
-            || at(extremes.minimum.at),
-            false,
-        );
+        // (p - f)/(R|f|) changes its sign with t^k where a zero of odd order k is divided out.
+        let turned =
+            shared_zero % 2 == 1 && matches!(self.task.subject.measure, Measure::Mixed { .. });
+        if turned {
+            self.cover(Float::with_val(RESULT_PRECISION, -&high), high);
+            self.cover(low.clone(), Float::with_val(RESULT_PRECISION, -&low));
+        } else {
+            self.cover(low, high);
+        }
+        for (extreme, value, up) in [
+            (&extremes.maximum, extremes.maximum.lower, true),
+            (&extremes.minimum, extremes.minimum.upper, false),
+        ] {
+            let turn = turned && extreme.at < 0.0;
+            let value = if turn { -scaled(value) } else { scaled(value) };
+            self.reach(value, || at(extreme.at), up != turn);
+        }
     }
 
     /// Every signed error of some cell lies in [low, high].
@@ -426,6 +433,10 @@ impl<'a> Search<'a> {
             return;
         }
         let [left, right] = &self.task.inner;
+        if left > right {
+            // Nothing is certain to belong to the set.
+            return;
+        }
         let mut places = Vec::new();
         for (end, owned) in self.task.inner.iter().zip(self.task.owned) {
             if owned {
@@ -456,6 +467,13 @@ impl<'a> Search<'a> {
 
     /// The reference may vanish in the cell (relative errors).
     fn zero_of_reference(&mut self, cell: Cell) {
+        if let Measure::Mixed { absolute, .. } = self.task.subject.measure
+            && *absolute > 0
+        {
+            // A + R|f| does not vanish: no zero may be divided out of it.
+            self.divide(cell, Unfinished::Budget);
+            return;
+        }
         if cell
             .anchor
             .as_ref()
@@ -466,12 +484,16 @@ impl<'a> Search<'a> {
         }
         match around_zero(self.task, &cell) {
             Shared::Anchor(anchor) => self.queue.extend(cell.anchored(anchor)),
-            Shared::Unbounded { at, value } => {
+            Shared::Unbounded { at, error } => {
                 self.result.unbounded = true;
                 let centre = Centre::rational(at);
-                let (up, down) = (value.clone(), -value);
-                self.reach(up, || (centre.clone(), 0), true);
-                self.cover(down, Float::with_val(RESULT_PRECISION, Special::Infinity));
+                let up = error.is_sign_positive();
+                self.reach(error, || (centre.clone(), 0), up);
+                // Either sign may be unbounded, and what is left of the piece is not looked at.
+                self.cover(
+                    Float::with_val(RESULT_PRECISION, Special::NegInfinity),
+                    Float::with_val(RESULT_PRECISION, Special::Infinity),
+                );
                 self.queue.clear();
             }
             Shared::Unknown if !cell.sought => {

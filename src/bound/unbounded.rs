@@ -7,6 +7,8 @@
 //! error on a set that contains z. The same holds at an exact zero z of f where p(z) != 0, and
 //! (for arguments near z) where p vanishes there to a lower order than f.
 
+use std::cmp::Ordering;
+
 use rug::float::Round;
 use rug::{Complete, Float, Rational};
 
@@ -16,6 +18,7 @@ use crate::bound::point::{exactly, values_at};
 use crate::bound::search::Task;
 use crate::bound::zeros::{bracket, coefficients_of_form, exact_zero, leading_zeros_of_form};
 use crate::function::exact::Centre;
+use crate::function::range::range;
 use crate::number::wide_interval::WideInterval;
 
 /// What is known about a zero of the reference.
@@ -23,12 +26,12 @@ use crate::number::wide_interval::WideInterval;
 pub enum Shared {
     /// The approximant shares it: expand there and divide it out.
     Anchor(Anchor),
-    /// Not shared: the relative error is unbounded, and reaches `value` at `at`.
+    /// Not shared: the relative error is unbounded.
     Unbounded {
         /// An argument near the zero.
         at: Rational,
-        /// Proved lower bound of the relative error there.
-        value: Float,
+        /// The signed error there, proved and rounded toward zero.
+        error: Float,
     },
     /// Nothing is proved.
     Unknown,
@@ -63,7 +66,11 @@ pub fn around_zero(task: &Task, cell: &Cell) -> Shared {
         && high <= task.inner[1]
     {
         let around = WideInterval::from_rationals(&low, &high, 512);
-        if range_of_form(form, &around).is_ok_and(|range| !range.contains_zero()) {
+        // Every operation is continuous where it is defined, so a reference that can be enclosed is
+        // continuous here: a pole changes the sign too, without a zero.
+        if range(reference, &around).is_ok()
+            && range_of_form(form, &around).is_ok_and(|range| !range.contains_zero())
+        {
             return witness(task, &Centre::rational(low));
         }
     }
@@ -89,35 +96,42 @@ fn witness(task: &Task, zero: &Centre) -> Shared {
         Some(bound) => Float::with_val(64, bound) * 2u32,
         None => Float::with_val(64, 1024),
     };
+    let convincing = |error: &Float| error.cmp_abs(&enough).is_some_and(Ordering::is_gt);
     let mut best: Option<(Rational, Float)> = None;
     for halvings in 1..=400u32 {
         let step = width.clone() >> halvings;
         for x in [(&place + &step).complete(), (&place - &step).complete()] {
-            if x < *left || x > *right {
+            let [left_owned, right_owned] = task.owned;
+            let after_left = x > *left || left_owned && x == *left;
+            let before_right = x < *right || right_owned && x == *right;
+            if !(after_left && before_right) {
                 continue;
             }
             let Ok(values) = values_at(&task.subject, &exactly(&x), 0, 1024) else {
                 continue;
             };
             let error = values.error;
-            let modulus = if error.is_positive() {
+            let error = if error.is_positive() {
                 error.lower()
             } else if error.is_negative() {
-                -error.upper()
+                error.upper()
             } else {
                 continue;
             };
-            let modulus = Float::with_val_round(64, modulus, Round::Down).0;
-            if best.as_ref().is_none_or(|(_, value)| modulus > *value) {
-                best = Some((x, modulus));
+            let error = Float::with_val_round(64, error, Round::Zero).0;
+            if best
+                .as_ref()
+                .is_none_or(|(_, value)| error.cmp_abs(value).is_some_and(Ordering::is_gt))
+            {
+                best = Some((x, error));
             }
         }
-        if best.as_ref().is_some_and(|(_, value)| *value > enough) {
+        if best.as_ref().is_some_and(|(_, error)| convincing(error)) {
             break;
         }
     }
     match best {
-        Some((at, value)) if value > enough => Shared::Unbounded { at, value },
+        Some((at, error)) if convincing(&error) => Shared::Unbounded { at, error },
         _ => Shared::Unknown,
     }
 }

@@ -47,7 +47,7 @@ impl End {
     }
 
     /// Proved to be the same number: equal rationals, or the same text.
-    fn equals(&self, other: &End) -> bool {
+    pub fn equals(&self, other: &End) -> bool {
         let exact = self.low == self.high && other.low == other.high;
         (exact && self.low == other.low) || (!exact && self.text == other.text)
     }
@@ -58,23 +58,33 @@ impl End {
     }
 }
 
-/// The intersection of a piece, whose ends it may or may not own, with one interval of a claim.
-/// `None` if it is empty, or is a single boundary point that belongs to the neighbouring piece.
-pub fn intersection(piece: [&End; 2], owned: [bool; 2], claim: [&End; 2]) -> Option<Part> {
+/// The intersection of a piece with one interval of a claim, either of which may or may not own
+/// its ends. `None` if it is empty, or is a single point that does not belong to both.
+pub fn intersection(
+    piece: [&End; 2],
+    owned: [bool; 2],
+    claim: [&End; 2],
+    closed: [bool; 2],
+) -> Option<Part> {
     if piece[1].below(claim[0]) || claim[1].below(piece[0]) {
         return None;
     }
-    if (!owned[1] && piece[1].equals(claim[0])) || (!owned[0] && claim[1].equals(piece[0])) {
+    if (!(owned[1] && closed[0]) && piece[1].equals(claim[0]))
+        || (!(owned[0] && closed[1]) && claim[1].equals(piece[0]))
+    {
         return None;
     }
     let outer_left = (&piece[0].low).max(&claim[0].low).clone();
     let outer_right = (&piece[1].high).min(&claim[1].high).clone();
     let inner_left = (&piece[0].high).max(&claim[0].high).clone();
     let inner_right = (&piece[1].low).min(&claim[1].low).clone();
-    // An end that the claim sets strictly inside the piece belongs to the set; otherwise the
-    // owner of the piece's end decides.
-    let left = piece[0].below(claim[0]) || owned[0];
-    let right = claim[1].below(piece[1]) || owned[1];
+    // The end that lies further inside decides whether it belongs to the set; where it is not
+    // known which one does, both must.
+    let belongs = |piece_is_inside: bool, claim_is_inside: bool, k: usize| {
+        (claim_is_inside || owned[k]) && (piece_is_inside || closed[k])
+    };
+    let left = belongs(claim[0].below(piece[0]), piece[0].below(claim[0]), 0);
+    let right = belongs(piece[1].below(claim[1]), claim[1].below(piece[1]), 1);
     Some(Part {
         outer: [outer_left.clone(), outer_right.max(outer_left)],
         inner: [inner_left, inner_right],
