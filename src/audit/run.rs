@@ -17,7 +17,7 @@ use crate::function::constant::Constant;
 pub const TIGHTNESS: f64 = 1e-3;
 
 /// Units of work for one claim on one piece at effort 1.
-pub const BUDGET: u64 = 200_000_000;
+pub const BUDGET: u64 = 1_000_000_000;
 
 /// One claim about one approximant, carried out.
 #[derive(Clone, Debug)]
