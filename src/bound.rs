@@ -12,10 +12,13 @@
 //!    by the natural interval extension on a geometrically graded mesh.
 //! 5. [`zeros`] finds exact zeros: of a denominator (removable singularities) and of the
 //!    reference (shared zeros of a relative error), around which a cell is then centred.
-//! 6. [`point`] evaluates the error at one exact argument: every lower end and every witness
-//!    comes from there.
+//! 6. [`pole`] proves that a formula has no value somewhere in the domain, and [`unbounded`] that a
+//!    relative error is unbounded: neither can be resolved by refinement.
+//! 7. [`point`] evaluates the error at one exact argument: every lower end and every witness
+//!    comes from there ([`confirm`]).
 
 pub mod cell;
+pub mod confirm;
 pub mod double_polynomial;
 pub mod extremes;
 pub mod measure;

@@ -6,6 +6,7 @@ use rug::float::{Round, Special};
 use rug::{Complete, Float, Rational};
 
 use crate::bound::cell::{Anchor, Cell};
+use crate::bound::confirm::confirmed;
 use crate::bound::measure::Measure;
 use crate::bound::patch::{NoPatch, Part, Patch, Remainder, Wish, patch};
 use crate::bound::plain::plain_bounds;
@@ -527,24 +528,23 @@ impl<'a> Search<'a> {
         } else {
             self.minimum_at.take()
         };
-        if let Some((at, zero)) = &result.at
-            && let Ok(values) = precise_values_at(
-                &self.task.subject,
-                at,
-                *zero,
-                self.wish.precision,
-                &self.wish.floor,
-            )
-        {
-            let error = &values.error;
-            let modulus = if error.is_positive() {
-                error.lower()
-            } else if error.is_negative() {
-                -error.upper()
+        let place = result.at.take();
+        let found = place
+            .as_ref()
+            .and_then(|at| confirmed(self.task, at, self.wish.precision, &self.wish.floor));
+        result.at = place;
+        if let Some(found) = found {
+            if up {
+                let low =
+                    Float::with_val_round(RESULT_PRECISION, found.error.lower(), Round::Down).0;
+                result.maximum[0].max_mut(&low);
             } else {
-                Float::new(RESULT_PRECISION)
-            };
-            result.lower = Float::with_val_round(RESULT_PRECISION, modulus, Round::Down).0;
+                let high =
+                    Float::with_val_round(RESULT_PRECISION, found.error.upper(), Round::Up).0;
+                result.minimum[1].min_mut(&high);
+            }
+            result.lower = found.modulus;
+            result.at = Some(found.at);
         }
         self.result
     }
