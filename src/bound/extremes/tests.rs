@@ -37,8 +37,8 @@ fn check_absolute(coefficients: &[f64], tail: f64, tightness: f64) -> Extremes {
     for k in 0..=400 {
         let t = -1.0 + f64::from(k) / 200.0;
         let value = exact_value(coefficients, t);
-        let above = Rational::from(&value + Rational::from_f64(tail).unwrap());
-        let below = Rational::from(&value - Rational::from_f64(tail).unwrap());
+        let above = &value + Rational::from_f64(tail).unwrap();
+        let below = &value - Rational::from_f64(tail).unwrap();
         assert!(
             above <= found.maximum.upper,
             "{coefficients:?} exceeds its maximum at {t}"
