@@ -52,7 +52,7 @@ impl Ball {
     /// `None` unless the ball is proved to be >= 0, and > 0 for q < 0.
     ///
     /// x^q is increasing in x >= 0 for q > 0 and decreasing in x > 0 for q < 0, so that the values
-    /// at the two ends, rounded outward by [`rational_power`], enclose all.
+    /// at the two ends, rounded outward by `rational_power`, enclose all.
     #[must_use]
     pub fn pow_rational(&self, exponent: &Rational) -> Option<Self> {
         if exponent.is_integer()
