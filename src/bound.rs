@@ -30,5 +30,6 @@ pub mod remainder;
 pub mod search;
 pub mod shift;
 pub mod steering;
+pub mod task;
 pub mod unbounded;
 pub mod zeros;

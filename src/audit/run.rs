@@ -7,7 +7,7 @@ use rayon::prelude::*;
 
 use crate::approximant::piece::{Approximant, Owner};
 use crate::audit::file::AuditFile;
-use crate::bound::search::Undefined;
+use crate::bound::task::Undefined;
 use crate::claim::domain::{End, Part, intersection};
 use crate::claim::evaluation::{Effort, PieceOutcome, Summary, evaluate, summary};
 use crate::claim::model::{Claim, Target};

@@ -4,7 +4,7 @@ use rug::float::Round;
 use rug::{Float, Rational};
 
 use crate::bound::point::precise_values_at;
-use crate::bound::search::Task;
+use crate::bound::task::Task;
 use crate::function::exact::Centre;
 use crate::number::ball::Ball;
 

@@ -15,7 +15,7 @@ use rug::{Complete, Float, Rational};
 use crate::bound::cell::{Anchor, Cell};
 use crate::bound::plain::range_of_form;
 use crate::bound::point::{exactly, values_at};
-use crate::bound::search::Task;
+use crate::bound::task::Task;
 use crate::bound::zeros::{bracket, coefficients_of_form, exact_zero, leading_zeros_of_form};
 use crate::function::exact::Centre;
 use crate::function::range::range;

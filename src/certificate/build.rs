@@ -8,7 +8,7 @@ use crate::approximant::piece::{Approximant, Basis, Form, Owner, Piece, Stored};
 use crate::audit::file::AuditFile;
 use crate::audit::run::ClaimOutcome;
 use crate::bound::point::{PointValues, Subject, precise_values_at};
-use crate::bound::search::Unfinished;
+use crate::bound::task::Unfinished;
 use crate::certificate::model;
 use crate::claim::evaluation::{PieceOutcome, Place};
 use crate::claim::judgement::Verdict;
