@@ -10,7 +10,7 @@ use crate::bound::confirm::confirmed;
 use crate::bound::measure::Measure;
 use crate::bound::patch::{NoPatch, Part, Patch, Wish, patch};
 use crate::bound::plain::plain_bounds;
-use crate::bound::point::{precise_values_at, values_at};
+use crate::bound::point::{exactly, precise_values_at, values_at};
 use crate::bound::pole::undefined_near;
 use crate::bound::task::{Supremum, Task, Undefined, Unfinished};
 use crate::bound::unbounded::{Shared, around_zero};
@@ -18,12 +18,19 @@ use crate::bound::zeros::exact_zero;
 use crate::function::exact::Centre;
 use crate::function::formula::{Formula, Operation};
 use crate::function::refusal::{Refusal, RefusalKind};
+use crate::function::series::series;
 
 /// Bits of the reported enclosures.
 const RESULT_PRECISION: u32 = 64;
 
 /// Deepest bisection of a piece.
 const DEEPEST: u32 = 400;
+
+/// Units of work that a search for a zero of the reference counts as.
+const ZERO_SEARCH: u64 = 100_000;
+
+/// Once a claim is refuted, the budget is divided by this.
+const REFUTED_SHARE: u64 = 100;
 
 /// Depths at which a refused cell is searched for a pole, which costs more than a refusal.
 const POLE_DEPTHS: [u32; 8] = [0, 1, 3, 6, 12, 24, 48, 96];
@@ -96,7 +103,7 @@ impl<'a> Search<'a> {
                 minimum: [infinity(above), infinity(above)],
                 maximum: [infinity(below), infinity(below)],
                 at: None,
-                unbounded: false,
+                unbounded: None,
                 by_continuity: Vec::new(),
                 remainder: None,
                 cells: [0, 0],
@@ -112,7 +119,14 @@ impl<'a> Search<'a> {
 
     fn run(mut self) -> Result<Supremum, Undefined> {
         while let Some(cell) = self.queue.pop_front() {
-            if self.result.work > self.budget {
+            // A claim that is refuted already needs no tight enclosure.
+            let refuted = self
+                .task
+                .bound
+                .as_ref()
+                .is_some_and(|bound| self.wish.known > *bound);
+            let share = if refuted { REFUTED_SHARE } else { 1 };
+            if self.result.work > self.budget / share {
                 self.give_up(&cell, Unfinished::Budget);
                 break;
             }
@@ -127,6 +141,12 @@ impl<'a> Search<'a> {
                 Ok(found) => self.merge(&cell, &frame.centre, frame.shared_zero, &found),
                 Err(NoPatch::TooWide | NoPatch::Exhausted) => {
                     self.look_for_poles(&cell)?;
+                    if cell.depth >= PLAIN_FROM {
+                        self.seed()?;
+                        if self.settled_plainly(&cell) {
+                            continue;
+                        }
+                    }
                     self.divide(cell, Unfinished::Budget);
                 }
                 Err(NoPatch::Unresolved) => {
@@ -257,7 +277,7 @@ impl<'a> Search<'a> {
     /// A series or a disc was refused: a removable singularity, a singularity to be approached by
     /// a graded mesh, or an argument where the formula has no value.
     fn refused(&mut self, cell: Cell, refusal: Refusal, part: Part) -> Result<(), Undefined> {
-        self.seed();
+        self.seed()?;
         if refusal.proved && refusal.kind != RefusalKind::NotAnalytic && self.belongs(&cell) {
             let at = cell.middle();
             let exact = Centre::rational(at.clone());
@@ -354,14 +374,14 @@ impl<'a> Search<'a> {
     }
 
     /// Evaluates the error at a few arguments, so that pruning works before the first patch.
-    fn seed(&mut self) {
+    fn seed(&mut self) -> Result<(), Undefined> {
         if std::mem::replace(&mut self.seeded, true) {
-            return;
+            return Ok(());
         }
         let [left, right] = &self.task.inner;
         if left > right {
             // Nothing is certain to belong to the set.
-            return;
+            return Ok(());
         }
         let mut places = Vec::new();
         for (end, owned) in self.task.inner.iter().zip(self.task.owned) {
@@ -375,20 +395,37 @@ impl<'a> Search<'a> {
         }
         for place in places {
             let exact = Centre::rational(place);
-            let Ok(values) = precise_values_at(
+            let values = match precise_values_at(
                 &self.task.subject,
                 &exact,
                 0,
                 self.wish.precision,
                 &self.wish.floor,
-            ) else {
-                continue;
+            ) {
+                Ok(values) => values,
+                Err(refusal) if refusal.proved => {
+                    return Err(self.undefined_at(exact.rational, refusal));
+                }
+                Err(_) => continue,
             };
             let down = Float::with_val_round(RESULT_PRECISION, values.error.lower(), Round::Down).0;
             let up = Float::with_val_round(RESULT_PRECISION, values.error.upper(), Round::Up).0;
             self.reach(down, || (exact.clone(), 0), true);
             self.reach(up, || (exact.clone(), 0), false);
         }
+        Ok(())
+    }
+
+    /// One of the two functions has no value at an argument of the set.
+    fn undefined_at(&self, at: Rational, refusal: Refusal) -> Undefined {
+        let unit = Float::with_val(2, 1);
+        let reference = series(self.task.subject.reference, &exactly(&at), &unit, 1, 256);
+        let part = if reference.is_err() {
+            Part::Reference
+        } else {
+            Part::Approximant
+        };
+        Undefined { at, refusal, part }
     }
 
     /// The reference may vanish in the cell (relative errors).
@@ -408,10 +445,11 @@ impl<'a> Search<'a> {
             self.divide(cell, Unfinished::Budget);
             return;
         }
+        self.result.work += ZERO_SEARCH;
         match around_zero(self.task, &cell) {
             Shared::Anchor(anchor) => self.queue.extend(cell.anchored(anchor)),
-            Shared::Unbounded { at, error } => {
-                self.result.unbounded = true;
+            Shared::Unbounded { zero, at, error } => {
+                self.result.unbounded = Some(zero);
                 let centre = Centre::rational(at);
                 let up = error.is_sign_positive();
                 self.reach(error, || (centre.clone(), 0), up);
@@ -427,6 +465,10 @@ impl<'a> Search<'a> {
                     sought: true,
                     ..cell
                 });
+            }
+            Shared::OrderUnknown => {
+                let at = cell.middle();
+                self.give_up(&cell, Unfinished::ZeroOfReference { at });
             }
             Shared::Unknown if cell.depth >= 60 => {
                 let at = cell.middle();
@@ -444,7 +486,7 @@ impl<'a> Search<'a> {
         let result = &mut self.result;
         let below = Float::with_val(RESULT_PRECISION, -&result.minimum[0]);
         result.upper = below.max(&result.maximum[1]);
-        if result.unbounded {
+        if result.unbounded.is_some() {
             result.upper = Float::with_val(RESULT_PRECISION, Special::Infinity);
         }
         let up = result.maximum[0] >= Float::with_val(RESULT_PRECISION, -&result.minimum[1]);

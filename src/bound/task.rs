@@ -57,9 +57,9 @@ pub struct Supremum {
     /// An argument of the set where the lower end is reached, and the order of the zero that
     /// both functions share there.
     pub at: Option<(Centre, usize)>,
-    /// The relative error is proved to be unbounded (a zero of the reference that the
-    /// approximant does not share).
-    pub unbounded: bool,
+    /// The relative error is proved to be unbounded near this zero of the reference, which the
+    /// approximant does not share.
+    pub unbounded: Option<Centre>,
     /// Removable singularities and shared zeros that were taken by continuity.
     pub by_continuity: Vec<Centre>,
     /// Remainder of the patch with the largest error.

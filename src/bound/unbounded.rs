@@ -28,13 +28,18 @@ pub enum Shared {
     Anchor(Anchor),
     /// Not shared: the relative error is unbounded.
     Unbounded {
+        /// The zero, or a point next to it.
+        zero: Centre,
         /// An argument near the zero.
         at: Rational,
         /// The signed error there, proved and rounded toward zero.
         error: Float,
     },
-    /// Nothing is proved.
+    /// Nothing is proved here; smaller cells may help.
     Unknown,
+    /// There is an exact zero, but of an order that is not known (the reference may vanish
+    /// identically): smaller cells cannot help.
+    OrderUnknown,
 }
 
 /// Examines the zero of the reference in a cell.
@@ -44,7 +49,7 @@ pub fn around_zero(task: &Task, cell: &Cell) -> Shared {
     let [left, right] = &cell.ends;
     if let Some(zero) = exact_zero(reference, reference.root(), left, right) {
         let Some(order) = zero.order else {
-            return Shared::Unknown;
+            return Shared::OrderUnknown;
         };
         let shared = leading_zeros_of_form(form, &zero.centre);
         if shared >= order {
@@ -131,7 +136,11 @@ fn witness(task: &Task, zero: &Centre) -> Shared {
         }
     }
     match best {
-        Some((at, error)) if convincing(&error) => Shared::Unbounded { at, error },
+        Some((at, error)) if convincing(&error) => Shared::Unbounded {
+            zero: zero.clone(),
+            at,
+            error,
+        },
         _ => Shared::Unknown,
     }
 }

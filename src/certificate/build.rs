@@ -297,12 +297,16 @@ fn notes(outcome: &ClaimOutcome) -> Vec<String> {
             }
         }
     }
-    if outcome.pieces.iter().any(|(_, piece)| piece.unbounded) {
-        notes.push(
-            "the relative error is unbounded: the reference has a zero that the approximant does \
-             not share"
-                .to_owned(),
-        );
+    let zero = outcome
+        .pieces
+        .iter()
+        .find_map(|(_, piece)| piece.unbounded.as_ref());
+    if let Some(zero) = zero {
+        notes.push(format!(
+            "the relative error is unbounded: the reference vanishes at or near x = {}, where the \
+             approximant does not; claim a mixed error, or leave the zero out with `except`",
+            rounded_down(&zero.ball(128).lower(), 10)
+        ));
     }
     notes
 }
@@ -314,8 +318,8 @@ fn reason(outcome: &ClaimOutcome) -> String {
         .unfinished
         .map(|index| &outcome.pieces[index])
     else {
-        return "the bound lies inside the enclosure, which the arithmetic used could not narrow \
-                further; a larger --effort may decide it"
+        return "the bound lies inside the enclosure, whose ends cannot be brought closer: the \
+                supremum equals the bound, or all but; loosen at_most slightly"
             .to_owned();
     };
     let near = |x: &Rational| {

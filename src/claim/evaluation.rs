@@ -38,8 +38,8 @@ pub struct PieceOutcome {
     pub maximum: [Float; 2],
     /// Where the lower end is reached.
     pub at: Option<Place>,
-    /// The relative error is proved to be unbounded.
-    pub unbounded: bool,
+    /// The relative error is proved to be unbounded near this zero of the reference.
+    pub unbounded: Option<Centre>,
     /// Points taken by continuity.
     pub by_continuity: Vec<Centre>,
     /// Enclosure of the supremum before the coefficients were stored.
@@ -160,7 +160,7 @@ fn joined(a: Supremum, b: Supremum) -> Supremum {
         upper: larger(&first.upper, &second.upper),
         minimum: [0, 1].map(|k| smaller(&first.minimum[k], &second.minimum[k])),
         maximum: [0, 1].map(|k| larger(&first.maximum[k], &second.maximum[k])),
-        unbounded: first.unbounded || second.unbounded,
+        unbounded: first.unbounded.clone().or(second.unbounded),
         by_continuity: first
             .by_continuity
             .iter()
@@ -183,7 +183,7 @@ fn nothing() -> Supremum {
         minimum: [Special::Infinity, Special::Infinity].map(|x| Float::with_val(64, x)),
         maximum: [Special::NegInfinity, Special::NegInfinity].map(|x| Float::with_val(64, x)),
         at: None,
-        unbounded: false,
+        unbounded: None,
         by_continuity: Vec::new(),
         remainder: None,
         cells: [0, 0],

@@ -140,7 +140,7 @@ fn describe(file: &AuditFile, error: &audit_run::AuditError) -> String {
                 .get(formula.span(undefined.refusal.node))
                 .unwrap_or_else(|| formula.text());
             format!(
-                "{name}: claim {claim}: the {} has no value at x = {}: `{operation}` is not {}; \
+                "{name}: claim `{claim}`: the {} has no value at x = {}: `{operation}` is not {}; \
                  restrict `on` to where it is, or correct the formula",
                 undefined.part.name(),
                 crate::number::decimal::rational_down(&undefined.at, 10),
@@ -148,7 +148,7 @@ fn describe(file: &AuditFile, error: &audit_run::AuditError) -> String {
             )
         }
         audit_run::AuditError::EmptySet { claim } => format!(
-            "{name}: claim {claim}: no argument is left of `on` after `except`; leave out less"
+            "{name}: claim `{claim}`: no argument is left of `on` after `except`; leave out less"
         ),
         audit_run::AuditError::End { text } => {
             format!("{name}: the end `{text}` has no value; write a constant that has one")

@@ -66,7 +66,7 @@ fn claim_lines(
         };
         writeln!(
             out,
-            "            worst at x = {}{of}",
+            "            worst near x = {}{of}",
             shortened(&place.decimal)
         )?;
     }
@@ -74,26 +74,27 @@ fn claim_lines(
         writeln!(out, "            witness: x = {}", witness.at.exact)?;
         writeln!(
             out,
-            "                     approximant {}",
+            "                     approximant  {}",
             middle(&witness.approximant)
         )?;
         writeln!(
             out,
-            "                     reference   {}",
+            "                     reference    {}",
             middle(&witness.reference)
         )?;
         writeln!(
             out,
-            "                     error       {}",
+            "                     signed error {}",
             middle(&witness.error)
         )?;
     }
     if let Some((_, error)) = worst_piece(certificate, claim) {
         let budget = &error.budget;
-        if budget.storage[1] != "0" {
+        if storage_matters(&budget.truncation[1], &error.enclosure[1]) {
             writeln!(
                 out,
-                "            budget: before storage {}, change by storage {} (absolute)",
+                "            without the rounding of the stored coefficients: {}; storing moves the \
+                 value by {}",
                 up_to(&budget.truncation[1]),
                 up_to(&budget.storage[1])
             )?;
@@ -144,6 +145,15 @@ fn worst_piece<'a>(
     pieces_of(certificate, claim).find(|(piece, _)| piece.piece == place.piece)
 }
 
+/// True if the coefficients as written would do better by more than a hundredth.
+fn storage_matters(written: &str, stored: &str) -> bool {
+    use crate::number::literal::parse;
+    match (parse(written), parse(stored)) {
+        (Ok(written), Ok(stored)) => written * 100u32 < stored * 99u32,
+        _ => false,
+    }
+}
+
 fn up_to(text: &str) -> String {
     format!("<= {}", rounded(text, true))
 }
@@ -165,7 +175,12 @@ fn shortened(text: &str) -> String {
     let Ok(value) = crate::number::literal::parse(text) else {
         return text.to_owned();
     };
-    crate::number::decimal::rational_down(&value, 8)
+    // Toward zero, so that an argument at an end of its set does not seem to lie beyond it.
+    if value < 0 {
+        crate::number::decimal::rational_up(&value, 10)
+    } else {
+        crate::number::decimal::rational_down(&value, 10)
+    }
 }
 
 /// The digits on which both ends of a narrow enclosure agree, or both ends.
