@@ -396,17 +396,53 @@ impl Question {
         within(&self.on) && !self.except.iter().any(within)
     }
 
-    /// True if no argument is left but single points.
-    pub fn is_thin(&self) -> bool {
+    /// The closures of the intervals that are left of `on` after the exceptions. The error is
+    /// continuous on a piece, so its supremum is that over the closure.
+    fn intervals(&self) -> Vec<[Rational; 2]> {
         let mut except = self.except.clone();
         except.sort();
-        let mut left = self.on[0].clone();
+        let [mut left, right] = self.on.clone();
+        let mut found = Vec::new();
         for [from, to] in except {
-            if from > left {
-                return false;
-            }
+            found.push([left.clone(), from.min(right.clone())]);
             left = left.max(to);
         }
-        left >= self.on[1]
+        found.push([left, right]);
+        found.retain(|ends| ends[0] < ends[1]);
+        found
+    }
+
+    /// True if no argument is left but single points.
+    pub fn is_thin(&self) -> bool {
+        self.intervals().is_empty()
+    }
+}
+
+impl Case {
+    /// True if the boundary or inner point x of a piece belongs to it.
+    pub fn owns(&self, piece: usize, x: &Rational) -> bool {
+        let [left, right] = [&self.cuts[piece], &self.cuts[piece + 1]];
+        let (first, last) = (piece == 0, piece + 2 == self.cuts.len());
+        if self.owner_is_left {
+            (first || x > left) && x <= right
+        } else {
+            x >= left && (last || x < right)
+        }
+    }
+
+    /// The parts of a claim's set on each piece: intervals, or a boundary that the piece owns.
+    pub fn parts(&self, question: &Question) -> Vec<(usize, [Rational; 2])> {
+        let mut parts = Vec::new();
+        for (piece, ends) in self.cuts.windows(2).enumerate() {
+            for interval in question.intervals() {
+                let left = interval[0].clone().max(ends[0].clone());
+                let right = interval[1].clone().min(ends[1].clone());
+                let point = left == right && self.owns(piece, &left) && question.contains(&left);
+                if left < right || point {
+                    parts.push((piece, [left, right]));
+                }
+            }
+        }
+        parts
     }
 }
