@@ -18,10 +18,10 @@ use sandbox::{Audit, Sandbox};
 #[test]
 fn the_exit_code_says_whether_claims_hold() {
     let sandbox = Sandbox::new();
-    sandbox.write("holds.audit.toml", &Audit::holds());
-    sandbox.write("fails.audit.toml", &Audit::fails());
-    sandbox.write("undecided.audit.toml", &Audit::undecided());
-    sandbox.write("measured.audit.toml", &Audit::measured());
+    sandbox.write("holds.audit.toml", Audit::holds());
+    sandbox.write("fails.audit.toml", Audit::fails());
+    sandbox.write("undecided.audit.toml", Audit::undecided());
+    sandbox.write("measured.audit.toml", Audit::measured());
     sandbox.write("bad.audit.toml", "[reference]\nformula = \"sin(\"\n");
     for (files, code) in [
         (&["holds"][..], 0),
@@ -44,10 +44,10 @@ fn the_exit_code_says_whether_claims_hold() {
 #[test]
 fn the_summary_names_file_title_claim_verdict_and_bound() {
     let sandbox = Sandbox::new();
-    sandbox.write("holds.audit.toml", &Audit::holds());
-    sandbox.write("fails.audit.toml", &Audit::fails());
-    sandbox.write("undecided.audit.toml", &Audit::undecided());
-    sandbox.write("measured.audit.toml", &Audit::measured());
+    sandbox.write("holds.audit.toml", Audit::holds());
+    sandbox.write("fails.audit.toml", Audit::fails());
+    sandbox.write("undecided.audit.toml", Audit::undecided());
+    sandbox.write("measured.audit.toml", Audit::measured());
     sandbox
         .audit(["holds.audit.toml"])
         .assert()
@@ -86,7 +86,7 @@ fn the_summary_names_file_title_claim_verdict_and_bound() {
 fn a_bad_file_does_not_keep_the_others_from_being_audited() {
     let sandbox = Sandbox::new();
     sandbox.write("a-bad.audit.toml", "title = 3\n");
-    sandbox.write("b-good.audit.toml", &Audit::holds());
+    sandbox.write("b-good.audit.toml", Audit::holds());
     sandbox
         .audit(["."])
         .assert()
@@ -98,9 +98,9 @@ fn a_bad_file_does_not_keep_the_others_from_being_audited() {
 #[test]
 fn json_is_one_array_of_certificates_and_nothing_else() {
     let sandbox = Sandbox::new();
-    sandbox.write("one/holds.audit.toml", &Audit::holds());
-    sandbox.write("two/fails.audit.toml", &Audit::fails());
-    sandbox.write("two/undecided.audit.toml", &Audit::undecided());
+    sandbox.write("one/holds.audit.toml", Audit::holds());
+    sandbox.write("two/fails.audit.toml", Audit::fails());
+    sandbox.write("two/undecided.audit.toml", Audit::undecided());
     let assert = sandbox
         .audit([".", "--format", "json", "--out", "certificates"])
         .assert()
@@ -151,7 +151,7 @@ fn json_stays_json_where_a_file_is_bad() {
 #[test]
 fn wrong_usage_is_told_and_ends_with_2() {
     let sandbox = Sandbox::new();
-    sandbox.write("a.audit.toml", &Audit::holds());
+    sandbox.write("a.audit.toml", Audit::holds());
     let cases: &[(&[&str], &str)] = &[
         (&[], "Usage: boundmark <COMMAND>"),
         (&["frobnicate"], "unrecognized subcommand 'frobnicate'"),
@@ -210,7 +210,7 @@ fn wrong_usage_is_told_and_ends_with_2() {
 #[test]
 fn the_limits_of_jobs_and_effort_are_allowed() {
     let sandbox = Sandbox::new();
-    sandbox.write("a.audit.toml", &Audit::holds());
+    sandbox.write("a.audit.toml", Audit::holds());
     for option in [
         "--jobs=1",
         "--jobs=64",
@@ -226,7 +226,7 @@ fn the_limits_of_jobs_and_effort_are_allowed() {
 #[test]
 fn results_do_not_depend_on_jobs() {
     let sandbox = Sandbox::new();
-    sandbox.write("a.audit.toml", &Audit::many_pieces(40));
+    sandbox.write("a.audit.toml", Audit::many_pieces(40));
     let summary = |jobs: &str| {
         let assert = sandbox
             .audit(["a.audit.toml", "--jobs", jobs, "--out", jobs])

@@ -8,9 +8,9 @@ use crate::sandbox::{Audit, Sandbox};
 #[test]
 fn certificates_keep_the_subfolders() {
     let sandbox = Sandbox::new();
-    sandbox.write("tables/top.audit.toml", &Audit::holds());
-    sandbox.write("tables/a/one.audit.toml", &Audit::holds());
-    sandbox.write("tables/a/b/two.audit.toml", &Audit::fails());
+    sandbox.write("tables/top.audit.toml", Audit::holds());
+    sandbox.write("tables/a/one.audit.toml", Audit::holds());
+    sandbox.write("tables/a/b/two.audit.toml", Audit::fails());
     sandbox.write("tables/a/notes.toml", "x = 1\n");
     sandbox.write("tables/a/old.certificate.json", "{}");
     sandbox
@@ -33,7 +33,7 @@ fn certificates_keep_the_subfolders() {
 #[test]
 fn a_file_named_itself_goes_to_the_top_of_the_output_folder() {
     let sandbox = Sandbox::new();
-    let path = sandbox.write("deep/below/name.audit.toml", &Audit::holds());
+    let path = sandbox.write("deep/below/name.audit.toml", Audit::holds());
     let path = path.to_str().expect("UTF-8");
     sandbox.audit([path, "--out", "out"]).assert().code(0);
     assert_eq!(sandbox.files("out"), ["name.certificate.json"]);
@@ -42,7 +42,7 @@ fn a_file_named_itself_goes_to_the_top_of_the_output_folder() {
 #[test]
 fn certificates_may_lie_beside_their_audits_and_are_replaced() {
     let sandbox = Sandbox::new();
-    sandbox.write("a/one.audit.toml", &Audit::holds());
+    sandbox.write("a/one.audit.toml", Audit::holds());
     sandbox.write("a/one.certificate.json", "an old one");
     sandbox.audit([".", "--out", "."]).assert().code(0);
     let first = sandbox.read("a/one.certificate.json");
@@ -61,7 +61,7 @@ fn certificates_may_lie_beside_their_audits_and_are_replaced() {
 fn a_certificate_can_be_read_by_everybody() {
     use std::os::unix::fs::PermissionsExt;
     let sandbox = Sandbox::new();
-    sandbox.write("one.audit.toml", &Audit::holds());
+    sandbox.write("one.audit.toml", Audit::holds());
     sandbox.audit([".", "--out", "out"]).assert().code(0);
     let metadata = std::fs::metadata(sandbox.path("out/one.certificate.json")).expect("written");
     assert_eq!(metadata.permissions().mode() & 0o777, 0o644);
@@ -70,7 +70,7 @@ fn a_certificate_can_be_read_by_everybody() {
 #[test]
 fn toml_and_json_say_the_same() {
     let sandbox = Sandbox::new();
-    sandbox.write("a.audit.toml", &Audit::holds());
+    sandbox.write("a.audit.toml", Audit::holds());
     sandbox.write(
         "b.audit.json",
         r#"{"title": "Exponential", "reference": {"formula": "exp(x)"},
@@ -93,9 +93,9 @@ fn toml_and_json_say_the_same() {
 #[test]
 fn equal_names_are_refused_before_anything_is_written() {
     let sandbox = Sandbox::new();
-    sandbox.write("a/same.audit.toml", &Audit::holds());
-    sandbox.write("b/same.audit.toml", &Audit::fails());
-    sandbox.write("c/same.audit.toml", &Audit::holds());
+    sandbox.write("a/same.audit.toml", Audit::holds());
+    sandbox.write("b/same.audit.toml", Audit::fails());
+    sandbox.write("c/same.audit.toml", Audit::holds());
     sandbox.write("c/same.audit.json", "{}");
     let pairs: [&[&str]; 3] = [
         &["a/same.audit.toml", "b/same.audit.toml"],
@@ -178,7 +178,7 @@ fn files_outside_of_the_folder_need_leave() {
 fn a_file_that_may_not_be_read_is_named() {
     use crate::sandbox::set_mode;
     let sandbox = Sandbox::new();
-    let path = sandbox.write("secret.audit.toml", &Audit::holds());
+    let path = sandbox.write("secret.audit.toml", Audit::holds());
     set_mode(&path, 0o000);
     sandbox
         .audit_unprivileged(&["secret.audit.toml"])
@@ -202,7 +202,7 @@ fn a_file_that_may_not_be_read_is_named() {
 fn an_output_folder_that_may_not_be_written_leaves_the_old_certificate() {
     use crate::sandbox::set_mode;
     let sandbox = Sandbox::new();
-    sandbox.write("one.audit.toml", &Audit::holds());
+    sandbox.write("one.audit.toml", Audit::holds());
     sandbox.write("out/one.certificate.json", "the old one");
     let folder = sandbox.path("out");
     set_mode(&folder, 0o555);
@@ -223,7 +223,7 @@ fn an_output_folder_that_may_not_be_written_leaves_the_old_certificate() {
 #[test]
 fn an_output_folder_that_is_a_file_is_refused() {
     let sandbox = Sandbox::new();
-    sandbox.write("one.audit.toml", &Audit::holds());
+    sandbox.write("one.audit.toml", Audit::holds());
     sandbox.write("out", "a file");
     sandbox
         .audit(["one.audit.toml", "--out", "out"])
@@ -236,7 +236,7 @@ fn an_output_folder_that_is_a_file_is_refused() {
 #[test]
 fn a_folder_in_the_place_of_a_certificate_is_left_alone() {
     let sandbox = Sandbox::new();
-    sandbox.write("one.audit.toml", &Audit::holds());
+    sandbox.write("one.audit.toml", Audit::holds());
     sandbox.write("out/one.certificate.json/keep.txt", "kept");
     sandbox
         .audit(["one.audit.toml", "--out", "out"])
@@ -252,7 +252,7 @@ fn a_folder_in_the_place_of_a_certificate_is_left_alone() {
 fn a_write_that_breaks_off_leaves_the_old_certificate() {
     use crate::sandbox::PROGRAM;
     let sandbox = Sandbox::new();
-    sandbox.write("one.audit.toml", &Audit::many_pieces(60));
+    sandbox.write("one.audit.toml", Audit::many_pieces(60));
     sandbox.write("out/one.certificate.json", "the old one");
     let mut shell = assert_cmd::Command::new("sh");
     // Ignored, the signal of the limit becomes an error of the write. Blocks have 512 or 1024 bytes.

@@ -10,9 +10,9 @@ const ESCAPE: &str = "\u{1b}[";
 
 fn sandbox() -> Sandbox {
     let sandbox = Sandbox::new();
-    sandbox.write("holds.audit.toml", &Audit::holds());
+    sandbox.write("holds.audit.toml", Audit::holds());
     sandbox.write("bad.audit.toml", "title = 3\n");
-    sandbox.write("many.audit.toml", &Audit::many_pieces(2000));
+    sandbox.write("many.audit.toml", Audit::many_pieces(2000));
     sandbox
 }
 
