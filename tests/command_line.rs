@@ -57,7 +57,7 @@ fn the_summary_names_file_title_claim_verdict_and_bound() {
                 .and(contains(
                     "holds     accuracy: absolute error at most 2e-3; supremum in [",
                 ))
-                .and(contains("worst at x = ")),
+                .and(contains("worst near x = ")),
         );
     sandbox
         .audit(["fails.audit.toml"])
