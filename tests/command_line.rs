@@ -66,7 +66,7 @@ fn the_summary_names_file_title_claim_verdict_and_bound() {
         .stdout(
             contains("FAILS     accuracy: absolute error exceeds 1e-3; supremum in [")
                 .and(contains("witness: x = "))
-                .and(contains("approximant in [").or(contains("approximant 1")))
+                .and(contains("approximant  in [").or(contains("approximant  1")))
                 .and(contains("reference ")),
         );
     sandbox.audit(["undecided.audit.toml"]).assert().stdout(

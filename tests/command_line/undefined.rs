@@ -43,7 +43,7 @@ fn a_reference_without_a_value_in_the_domain_is_refused() {
             .code(2)
             .stdout(is_empty())
             .stderr(contains(
-                "a.audit.toml: claim accuracy: the reference has no value at x = ",
+                "a.audit.toml: claim `accuracy`: the reference has no value at x = ",
             ))
             .stderr(contains(format!("`{operation}`")));
         let message = String::from_utf8(assert.get_output().stderr.clone()).expect("UTF-8");
