@@ -96,7 +96,7 @@ fn sample(file: &AuditFile, case: &Case, question: &Question) -> Seen {
             seen.maximum = seen.maximum.clone().max(&error.lower());
             Some(error.midpoint().clone().abs())
         };
-        let node = |k: u32| Rational::from(&width * Rational::from((k, PARTS))) + &part[0];
+        let node = |k: u32| (&width * Rational::from((k, PARTS))) + &part[0];
         let mut best: Option<(Float, Rational)> = None;
         for k in 0..=PARTS {
             let x = node(k);

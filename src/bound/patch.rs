@@ -319,6 +319,8 @@ struct Scaled {
     exponent: i64,
     numerator_exponent: i64,
     divisor_exponent: i64,
+    /// About R of a mixed error; steers only.
+    factor: f64,
 }
 
 /// What the tail must come down to.
@@ -380,6 +382,10 @@ impl Scaled {
             exponent: numerator_exponent - divisor_exponent,
             numerator_exponent,
             divisor_exponent,
+            factor: match measure {
+                Measure::Mixed { relative, .. } => relative.to_f64(),
+                _ => 1.0,
+            },
         }
     }
 
@@ -436,7 +442,14 @@ impl Scaled {
             return Goal::MoreBits(bits.next_multiple_of(32));
         }
         let weight = if weight.is_finite() { weight } else { 1.0 };
-        let tail = steering::log2_of(&Float::with_val(53, goal * weight));
+        let mut tail = steering::log2_of(&Float::with_val(53, goal * weight));
+        // The tail of the divisor spreads the error by its share of the divisor, whatever the size
+        // of the error: this matters where the error is large against 1.
+        if !matches!(self.target.divisor, Divisor::One) && self.factor > 0.0 {
+            let share = Float::with_val(53, wish.tightness / 8.0 * weight / self.factor);
+            let largest = steering::log2_of(&share) + self.divisor_exponent as f64;
+            tail = tail.min(largest - self.numerator_exponent as f64);
+        }
         Goal::Resolved(Resolved {
             known: reached.max(floor),
             tail_log2: tail + self.numerator_exponent as f64,

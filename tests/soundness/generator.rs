@@ -156,7 +156,7 @@ pub fn case(random: &mut Random) -> Case {
     let basis = *random.pick(&["power", "chebyshev", "bernstein", "hermite", "steps"]);
     let count = if basis == "steps" { 1 } else { count };
     let cuts: Vec<Rational> = (0..=count)
-        .map(|k| Rational::from(&width * Rational::from((k, count))) + &left)
+        .map(|k| (&width * Rational::from((k, count))) + &left)
         .collect();
     let owner_is_left = random.one_in(2);
     let mut approximant = json!({
@@ -338,7 +338,7 @@ fn bernstein(coefficients: &[Rational], u: &Rational) -> Rational {
 }
 
 fn question(random: &mut Random, left: &Rational, width: &Rational) -> Question {
-    let at = |k: i64| Rational::from(width * Rational::from((k, 24))) + left;
+    let at = |k: i64| (width * Rational::from((k, 24))) + left;
     let measure = match random.below(4) {
         0 => Measure::Relative,
         1 => Measure::Mixed(
