@@ -45,19 +45,54 @@ pub fn singleton(x: f64) -> Interval {
 
 /// Outward double interval of `ball` times 2^-exponent.
 pub fn outward(ball: &Ball, exponent: i64) -> Interval {
-    let bound = |x: Float, round| {
-        // Exponents beyond a 32-bit shift mean zero or infinity in doubles; the clamp keeps the
-        // shift in range and the rounding direction does the rest.
-        let shift = i32::try_from((-exponent).clamp(-1_000_000_000, 1_000_000_000)).unwrap_or(0);
-        (x << shift).to_f64_round(round)
-    };
     if !ball.is_finite() {
         return Interval::ENTIRE;
     }
     interval(
-        bound(ball.lower(), Round::Down),
-        bound(ball.upper(), Round::Up),
+        scaled(ball.lower(), exponent, Round::Down),
+        scaled(ball.upper(), exponent, Round::Up),
     )
+}
+
+/// Binary exponents beyond which a double is certainly zero or infinite.
+const BEYOND_DOUBLES: i64 = 3000;
+const BELOW_DOUBLES: i64 = -3000;
+
+/// x * 2^-exponent as a double, rounded in the given direction.
+///
+/// MPFR rounds a shift that leaves its exponent range to nearest, which would turn a tiny upper
+/// bound into 0; numbers that no double is near are therefore rounded here by their sign alone.
+fn scaled(x: Float, exponent: i64, round: Round) -> f64 {
+    let Some(own) = x.get_exp() else {
+        return x.to_f64_round(round);
+    };
+    let size = i64::from(own).saturating_sub(exponent);
+    let outside = matches!(
+        (round, x.is_sign_negative()),
+        (Round::Up, false) | (Round::Down, true)
+    );
+    let magnitude = match (size, outside) {
+        (BEYOND_DOUBLES.., true) => f64::INFINITY,
+        (BEYOND_DOUBLES.., false) => f64::MAX,
+        (..=BELOW_DOUBLES, true) => f64::from_bits(1),
+        (..=BELOW_DOUBLES, false) => 0.0,
+        _ => {
+            // |size| is small, so the shifted number is well inside MPFR's range.
+            let shift = -exponent;
+            return match i32::try_from(shift) {
+                Ok(shift) => (x << shift).to_f64_round(round),
+                Err(_) => match round {
+                    Round::Down => f64::NEG_INFINITY,
+                    _ => f64::INFINITY,
+                },
+            };
+        }
+    };
+    if x.is_sign_negative() {
+        -magnitude
+    } else {
+        magnitude
+    }
 }
 
 impl DoublePolynomial {
@@ -231,6 +266,43 @@ mod tests {
 
     fn rational(x: f64) -> Rational {
         Rational::from_f64(x).unwrap()
+    }
+
+    /// A bound far below every double, or far above, stays a bound on its side.
+    #[test]
+    fn numbers_beyond_doubles_are_rounded_outward() {
+        let power = |log2: i32| Float::with_val(64, 1) << log2;
+        for negative in [false, true] {
+            for (log2, exponent) in [
+                (-1_000_000_000, -100_000_000),
+                (-1_070_000_000, 100_000_000),
+                (-90_000_000, 0),
+                (1_000_000_000, 100_000_000),
+                (90_000_000, 0),
+                (1_070_000_000, -100_000_000),
+            ] {
+                let x = if negative { -power(log2) } else { power(log2) };
+                let found = outward(&Ball::from_float(x), exponent);
+                let (near, far) = if negative {
+                    (-found.sup(), -found.inf())
+                } else {
+                    (found.inf(), found.sup())
+                };
+                assert!(far > 0.0 && near < far, "2^{log2} became {found:?}");
+                assert!(if log2 < 0 {
+                    near <= 0.0
+                } else {
+                    far.is_infinite()
+                });
+            }
+            let x = if negative {
+                -power(100_000_007)
+            } else {
+                power(100_000_007)
+            };
+            let found = outward(&Ball::from_float(x), 100_000_000);
+            assert_eq!(found, singleton(if negative { -128.0 } else { 128.0 }));
+        }
     }
 
     proptest! {

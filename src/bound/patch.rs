@@ -76,7 +76,7 @@ pub struct Patch {
     /// Minimum and maximum of the signed error.
     pub extremes: Extremes,
     /// Scale of `extremes`.
-    pub exponent: i64,
+    pub exponent: i32,
     /// Remainder of the reference (or the larger of the two, where the approximant is a formula).
     pub remainder: Remainder,
     /// Bits used.
@@ -230,7 +230,8 @@ pub fn patch(
         };
         return Ok(Patch {
             extremes,
-            exponent: scaled.exponent,
+            // At most twice LARGEST_SCALE in modulus.
+            exponent: i32::try_from(scaled.exponent).map_err(|_| NoPatch::Unresolved)?,
             remainder: Remainder {
                 centre: frame.centre.clone(),
                 scale: frame.radius.clone(),
@@ -479,6 +480,9 @@ fn in_doubles(radius: Radius, exponent: i64) -> f64 {
         .to_f64_round(Round::Up)
 }
 
+/// Largest power of two by which polynomials are scaled.
+const LARGEST_SCALE: i64 = 100_000_000;
+
 /// An exponent that brings the largest of the balls near 1.
 fn exponent_of(balls: &[Ball]) -> i64 {
     let largest = balls
@@ -487,8 +491,13 @@ fn exponent_of(balls: &[Ball]) -> i64 {
         .max()
         .unwrap_or(Radius::ZERO);
     let log2 = steering::log2_of(&largest.to_float_upper(53));
-    // Zero and infinite balls have no scale of their own.
-    if log2.abs() < 1e15 { log2 as i64 } else { 0 }
+    // Zero and infinite balls have no scale of their own. The limit keeps a bound that is scaled
+    // back, a double times a quotient of two such powers, far inside MPFR's exponent range.
+    if log2.abs() < 1e15 {
+        (log2 as i64).clamp(-LARGEST_SCALE, LARGEST_SCALE)
+    } else {
+        0
+    }
 }
 
 /// t of an exact x on a frame, rounded to a double in the given direction.

@@ -26,7 +26,13 @@ const RESULT_PRECISION: u32 = 64;
 /// Deepest bisection of a piece.
 const DEEPEST: u32 = 400;
 
-/// Units of work that a search for a zero of the reference counts as.
+/// Least units of work that a cell counts as.
+const CELL_WORK: u64 = 500;
+
+/// Most cells that wait at one time: bounds the memory.
+const LONGEST_QUEUE: usize = 100_000;
+
+/// Units of work that a search for an exact zero counts as.
 const ZERO_SEARCH: u64 = 100_000;
 
 /// Once a claim is refuted, the budget is divided by this.
@@ -126,11 +132,11 @@ impl<'a> Search<'a> {
                 .as_ref()
                 .is_some_and(|bound| self.wish.known > *bound);
             let share = if refuted { REFUTED_SHARE } else { 1 };
-            if self.result.work > self.budget / share {
+            if self.result.work > self.budget / share || self.queue.len() > LONGEST_QUEUE {
                 self.give_up(&cell, Unfinished::Budget);
                 break;
             }
-            self.result.work += 1;
+            self.result.work += CELL_WORK;
             let frame = cell.frame(&self.task.inner, self.task.owned);
             match patch(
                 &self.task.subject,
@@ -171,8 +177,7 @@ impl<'a> Search<'a> {
         }
         self.wish.terms = self.wish.terms.max(found.terms.saturating_sub(4));
         self.wish.precision = self.wish.precision.max(found.precision);
-        let shift = i32::try_from(found.exponent).unwrap_or(0);
-        let scaled = |x: f64| Float::with_val(RESULT_PRECISION, x) << shift;
+        let scaled = |x: f64| Float::with_val(RESULT_PRECISION, x) << found.exponent;
         let extremes = &found.extremes;
         let at = |t: f64| {
             let place = cell.argument(centre, t);
@@ -292,6 +297,9 @@ impl<'a> Search<'a> {
             && let Some(at) = undefined_near(formula, refusal.node, &cell, &self.task.inner)
         {
             return Err(Undefined { at, refusal, part });
+        }
+        if refusal.kind == RefusalKind::DivisionByZero && cell.anchor.is_none() {
+            self.result.work += ZERO_SEARCH;
         }
         if refusal.kind == RefusalKind::DivisionByZero
             && cell.anchor.is_none()
