@@ -36,7 +36,7 @@ const LONGEST_QUEUE: usize = 100_000;
 const ZERO_SEARCH: u64 = 100_000;
 
 /// Once a claim is refuted, the budget is divided by this.
-const REFUTED_SHARE: u64 = 4;
+const REFUTED_SHARE: u64 = 2;
 
 /// Depths at which a refused cell is searched for a pole, which costs more than a refusal.
 const POLE_DEPTHS: [u32; 8] = [0, 1, 3, 6, 12, 24, 48, 96];
